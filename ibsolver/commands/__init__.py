@@ -1,0 +1,1 @@
+"""The commands room; see ibsolver/__init__.py for the map."""

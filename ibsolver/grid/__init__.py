@@ -1,0 +1,1 @@
+"""Where the unknowns sit: stretched rectilinear staggered grids. Imports `errors` only."""

@@ -1,0 +1,1 @@
+"""The motion room; see ibsolver/__init__.py for the map."""

@@ -1,0 +1,1 @@
+"""Assemble, march, record: the loop around the solver. Imports everything left of the run directory."""

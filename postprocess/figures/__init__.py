@@ -1,0 +1,1 @@
+"""Figures: the only room that imports matplotlib."""
