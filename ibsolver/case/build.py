@@ -22,7 +22,7 @@ def build_case(draft: Draft, tables: Tables, flap_tables: list[Table]) -> Case:
     fluid = read_fluid(draft, tables["fluid"]) if "fluid" in tables else None
     length = _reference_length(body)
     tow = read_tow(draft, tables, body, fluid, length)
-    units = Units(length, tow.speed)
+    units = Units(length, tow.speed, sound=not draft.at_fault(("fluid",), ("tow",), *((name,) for name in BODIES)))
     incidence = _motion(draft, tables, "incidence", body.number("incidence") if body else 0.0, units)
     heave = _motion(draft, tables, "heave", 0.0, units)
     flaps = tuple(read_flap(draft, table, units) for table in flap_tables)
@@ -36,7 +36,7 @@ def build_case(draft: Draft, tables: Tables, flap_tables: list[Table]) -> Case:
         flaps=flaps,
         incidence_motion=incidence,
         heave_motion=heave,
-        tank=read_tank(draft, tables["tank"], length),
+        tank=read_tank(draft, tables["tank"], units),
         domain=read_domain(draft, tables["domain"]),
         initial=Initial(**tables["initial"].fields()),
         grid=read_grid(draft, tables["grid"], box=body is None),

@@ -66,6 +66,7 @@ class Draft:
         self.lines = lines
         self.faults: list[Fault] = []
         self.places: set[Place] = set()
+        self.untold = 0
 
     def fault(self, place: Place, value: object, problem: str, suggestion: str = "") -> None:
         """Note a fault at `place`; `value` is raw, or `ABSENT`."""
@@ -78,12 +79,19 @@ class Draft:
         """Return whether a fault lies at or below one of the places, or at a parent of it."""
         return any(_related(bad, place) for bad in self.places for place in places)
 
+    def flooded(self) -> bool:
+        """Return whether there are more faults than are shown; one more is then counted, and need not be told."""
+        if len(self.faults) < MOST_FAULTS:
+            return False
+        self.untold += 1
+        return True
+
     def limited(self) -> list[Fault]:
         """Return the faults in the order of the file; a flood of them is cut with a last one that says so."""
         ordered = sorted(self.faults, key=lambda fault: (fault.file != self.file, fault.line))
-        if len(ordered) <= MOST_FAULTS:
+        rest = max(0, len(ordered) - MOST_FAULTS) + self.untold
+        if not rest:
             return ordered
-        rest = len(ordered) - MOST_FAULTS
         return ordered[:MOST_FAULTS] + [Fault(self.file, 0, "", "", f"{rest} more faults are not shown.")]
 
     def read_table(self, section: Section, place: Place, raw: dict[str, object]) -> Table:
@@ -93,7 +101,7 @@ class Draft:
         for name, value in raw.items():
             if name in known:
                 self._read_key(table, known[name], value)
-            else:
+            elif not self.flooded():
                 meant = near_key(name, section)
                 table.meant.update(meant)
                 table.bad.update([name, *meant])

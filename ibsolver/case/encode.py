@@ -153,15 +153,12 @@ def differences(one: Case, other: Case) -> list[str]:
     return [
         f"{name}: {_word(first, name)} and {_word(second, name)}."
         for name in names
-        if first.get(name, _MISSING) != second.get(name, _MISSING)
+        if first.get(name) != second.get(name)
     ]
 
 
-_MISSING = object()
-
-
 def _word(flat: dict[str, object], name: str) -> str:
-    if name not in flat or flat[name] is None:
+    if flat.get(name) is None:
         return "nothing"
     text = json.dumps(flat[name])
     if len(text) <= 60:
@@ -170,13 +167,13 @@ def _word(flat: dict[str, object], name: str) -> str:
 
 
 def _flat(data: object, name: str = "") -> dict[str, object]:
-    """Return nested dicts as one, with dotted names; lists of dicts are numbered, other lists stay whole."""
+    """Return nested dicts as one, with dotted names; lists of dicts are numbered, others stay whole, empty ones go."""
     if isinstance(data, dict) and data:
         pairs = [(f"{name}.{key}" if name else key, value) for key, value in data.items()]
     elif isinstance(data, list) and data and isinstance(data[0], dict):
         pairs = [(f"{name}[{index}]", value) for index, value in enumerate(data)]
     else:
-        return {name: data}
+        return {} if data == [] else {name: data}
     flat: dict[str, object] = {}
     for key, value in pairs:
         flat.update(_flat(value, key))

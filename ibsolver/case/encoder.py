@@ -13,6 +13,9 @@ from ibsolver.case.values import ValueFault
 MOST_BYTES = 64_000_000
 FEWEST_ROWS = 4
 MOST_POINTS = 4000
+LEAST_STEP = 1e-9  # s
+MOST_TIME = 1e10  # s
+MOST_SPEED = 1000.0  # m/s
 EXAMPLE = "0.125, 0.0473"
 _TIME = {"time_s": 1.0, "time_ms": 1e-3}
 _SPEED = {"speed_m_s": 1.0, "speed_mm_s": 1e-3}
@@ -53,16 +56,26 @@ def read_encoder(name: str, folder: Path | None) -> Record:
     if len(times) < FEWEST_ROWS:
         raise ValueFault(f"has {len(times)} rows; at least {FEWEST_ROWS} are needed.", "Export more of it.", name)
     check_increasing(columns, times)
+    check_size(columns, times, MOST_TIME, "Check the unit of the time.")
+    check_size(columns, speeds, MOST_SPEED, "Check the unit of the speed: m/s is due.")
     return Record(tuple(time - times[0] for time in times), tuple(speeds))
 
 
 def check_increasing(columns: Columns, times: list[float]) -> None:
     """Raise a fault at the first time that is not later than the one before."""
     for row in range(1, len(times)):
-        if times[row] == times[row - 1]:
-            raise columns.fault(row, "repeats the time of the row before.", "Keep one row for each time.")
-        if times[row] < times[row - 1]:
+        step = times[row] - times[row - 1]
+        if step < -LEAST_STEP:
             raise columns.fault(row, "is earlier than the row before.", "Sort the rows by time.")
+        if step < LEAST_STEP:
+            raise columns.fault(row, "repeats the time of the row before.", "Keep one row for each time.")
+
+
+def check_size(columns: Columns, values: list[float], most: float, remedy: str) -> None:
+    """Raise a fault at the first value whose size is beyond `most`."""
+    for row, value in enumerate(values):
+        if abs(value) > most:
+            raise columns.fault(row, f"holds {value:.4g}; at most {most:g} is taken.", remedy)
 
 
 def _named(columns: Columns) -> tuple[list[float], list[float]]:

@@ -10,14 +10,15 @@ from dataclasses import dataclass
 
 from ibsolver.case.csv_columns import Columns, read_columns
 from ibsolver.case.draft import Draft, Place, Table
-from ibsolver.case.encoder import check_increasing
+from ibsolver.case.encoder import check_increasing, check_size
 from ibsolver.case.files import file_beside
 from ibsolver.case.model import Motion
-from ibsolver.case.schema import SECTION, Key
+from ibsolver.case.schema import SECTION, Key, allowed
 from ibsolver.case.values import Length, ValueFault, read_value
 
 MOST_BYTES = 16_000_000
 MOST_ROWS = 20_000
+MOST_TIME = 1e6  # convective times
 _USED = {
     "constant": {"value"},
     "ramp": {"from", "to", "begin", "duration", "smoothing", "smoothing_parameter"},
@@ -42,10 +43,11 @@ _VALUE_COLUMNS = {
 
 @dataclass(frozen=True)
 class Units:
-    """What turns SI into convective units; None where the case is dimensionless."""
+    """What turns SI into convective units; None where the case is dimensionless, or at fault (`sound` is False)."""
 
     chord: float | None  # m
     speed: float | None  # m/s
+    sound: bool = True
 
 
 def read_motion(draft: Draft, place: Place, raw: object, key: Key, start: float, units: Units) -> Motion | None:
@@ -154,8 +156,9 @@ def _chords(draft: Draft, table: Table, name: str, length: Length, key: Key, uni
     """Return a length of either sign in chords, 0 after noting a fault."""
     chords = length.in_chords(units.chord)
     if chords is None:
-        problem = "is a length, but the case has no chord to divide it by."
-        draft.table_fault(table, name, problem, "Write it in chords.")
+        if units.sound:
+            problem = "is a length, but the case has no chord to divide it by."
+            draft.table_fault(table, name, problem, "Write it in chords.")
         return 0.0
     if not abs(chords) <= key.high:
         problem = f"is {chords:.4g} chords; at most {key.high:g} are taken."
@@ -176,11 +179,17 @@ def _reduced_frequency(draft: Draft, table: Table, units: Units) -> float:
     if not table.given("frequency"):
         return _number(table, "reduced_frequency")
     if units.chord is None or units.speed is None:
-        if table.sound("frequency"):
+        if table.sound("frequency") and units.sound:
             problem = "needs a chord and a speed in SI units, and the case is dimensionless."
             draft.table_fault(table, "frequency", problem, "Write for example reduced_frequency = 0.5.")
         return 0.0
-    return math.pi * _number(table, "frequency") * units.chord / units.speed
+    reduced = math.pi * _number(table, "frequency") * units.chord / units.speed
+    key = table.section.key("reduced_frequency")
+    if table.sound("frequency") and not key.low <= reduced <= key.high:
+        problem = f"gives a reduced frequency pi f chord / speed of {reduced:.4g}; {allowed(key)} is taken."
+        draft.table_fault(table, "frequency", problem, "Check its unit.")
+        return 0.0
+    return reduced
 
 
 def _read_csv_motion(draft: Draft, table: Table, key: Key, units: Units) -> Motion:
@@ -208,6 +217,7 @@ def csv_motion(draft: Draft, name: str, key: Key, units: Units) -> Motion:
         raise ValueFault(f"has {len(columns.rows)} rows; 2 to {MOST_ROWS} are read.", "Thin the table out.", name)
     times = _times(columns, units)
     check_increasing(columns, times)
+    check_size(columns, times, MOST_TIME, "Check the unit of the time.")
     values = _values(columns, key, units)
     return Motion("table", value=values[0], times=tuple(times), values=tuple(values), file=name)
 
@@ -218,6 +228,8 @@ def _times(columns: Columns, units: Units) -> list[float]:
         if title == "time":
             return columns.column(index)
         if title in ("time_s", "time_ms"):
+            if not units.sound:
+                return columns.column(index)
             if units.chord is None or units.speed is None:
                 raise _header_fault(columns, "has times in seconds, but the case is dimensionless.")
             factor = (1.0 if title == "time_s" else 1e-3) * units.speed / units.chord
@@ -231,7 +243,7 @@ def _values(columns: Columns, key: Key, units: Units) -> list[float]:
     for index, title in enumerate(columns.header):
         if title in known:
             factor = known[title] if title != "heave_chords" else 1.0
-            if key.dimension == "length" and title != "heave_chords":
+            if key.dimension == "length" and title != "heave_chords" and units.sound:
                 if units.chord is None:
                     raise _header_fault(columns, "has heights in SI units, but the case has no chord.")
                 factor = factor / units.chord

@@ -48,7 +48,10 @@ def normalised_outline(points: Points, name: str) -> tuple[tuple[float, float], 
     height = max(y for _, y in points) - min(y for _, y in points)
     if not 0 < chord < 1e150 or not 0 < height < 1e150 or chord < 1e-150:
         raise ValueFault("encloses nothing: its points lie on a line.", "Write the points around the body.", name)
-    scaled = without_repeats([((x - low) / chord, y / chord) for x, y in points])
+    kept = without_repeats([((x - low) / chord, y / chord) for x, y in points])
+    low = min(x for x, _ in kept)  # once more: an end of the curve may have been dropped as a repeat
+    chord = max(x for x, _ in kept) - low
+    scaled = [((x - low) / chord, y / chord) for x, y in kept]
     if not 3 <= len(scaled) <= MOST_POINTS:
         raise ValueFault(f"has {len(scaled)} different points; 3 to {MOST_POINTS} are taken.", "Thin it out.", name)
     crossing = first_crossing(scaled)
@@ -82,20 +85,32 @@ def signed_area(points: Points) -> float:
 
 
 def first_crossing(points: Points) -> tuple[int, int] | None:
-    """Return the indices of the first two sides that meet without being neighbours (or fold back), or None."""
+    """Return the indices of two sides that meet without being neighbours, or of two that fold back, or None."""
     import numpy as np
 
+    folded = _first_fold(points)
+    if folded is not None:
+        return folded
     start = np.array(points)
     end = np.roll(start, -1, axis=0)
     count = len(points)
-    for i in range(count):
-        later = np.arange(i + 1, count)
-        meets = _sides_meet(start[i], end[i], start[later], end[later])
-        neighbour = (later == i + 1) | ((later + 1) % count == i)
-        meets &= ~neighbour
-        meets |= neighbour & _folds_back(points, i, later)
+    for i in range(count - 2):
+        stop = count - 1 if i == 0 else count  # the last side is a neighbour of the first
+        meets = _sides_meet(start[i], end[i], start[i + 2 : stop], end[i + 2 : stop])
         if meets.any():
-            return i, int(later[meets.argmax()])
+            return i, i + 2 + int(meets.argmax())
+    return None
+
+
+def _first_fold(points: Points) -> tuple[int, int] | None:
+    """Return the indices of the first two neighbouring sides that lie on one another, or None."""
+    count = len(points)
+    for i in range(count):
+        a, b, c = points[i], points[(i + 1) % count], points[(i + 2) % count]
+        ux, uy, vx, vy = b[0] - a[0], b[1] - a[1], c[0] - b[0], c[1] - b[1]
+        along = ux * vx + uy * vy
+        if along < 0 and abs(ux * vy - uy * vx) <= 1e-12 * -along:
+            return i, (i + 1) % count
     return None
 
 
@@ -111,22 +126,6 @@ def _sides_meet(a, b, c, d):
         (np.maximum(a, b) >= np.minimum(c, d)) & (np.maximum(c, d) >= np.minimum(a, b)), axis=-1
     )
     return boxes & (d1 * d2 <= 0) & (d3 * d4 <= 0)
-
-
-def _folds_back(points: Points, i: int, later):
-    """Return, for neighbours of side i among `later`, whether the curve turns back on itself at the shared point."""
-    import numpy as np
-
-    folded = np.zeros(len(later), dtype=bool)
-    count = len(points)
-    for position, j in enumerate(later):
-        if j not in (i + 1, (i - 1) % count):
-            continue
-        first, second = (i, int(j)) if j == i + 1 else (int(j), i)
-        a, b, c = points[first], points[second], points[(second + 1) % count]
-        ux, uy, vx, vy = b[0] - a[0], b[1] - a[1], c[0] - b[0], c[1] - b[1]
-        folded[position] = abs(ux * vy - uy * vx) <= 1e-12 * abs(ux * vx + uy * vy) and ux * vx + uy * vy < 0
-    return folded
 
 
 def _csv_points(path: Path, name: str) -> Points:

@@ -15,12 +15,14 @@ from ibsolver.case.files import decoded, reason
 from ibsolver.case.lines import scan_lines
 from ibsolver.case.model import Case
 from ibsolver.case.schema import FILE_SECTIONS, SECTION, Section
-from ibsolver.case.values import ValueFault, show
+from ibsolver.case.values import ValueFault, printable, show
 from ibsolver.errors import CaseError, Fault
 
 MOST_BYTES = 1_000_000
 MOST_LINE = 4000
+MOST_DOTS = 60  # dotted keys cost the parser time with the square of their depth
 MOST_FLAPS = 20
+_QUOTED = re.compile(r'"[^"]*"|\'[^\']*\'|#.*')
 _ALWAYS = ("tow", "tank", "domain", "initial", "grid", "run", "output")
 
 
@@ -121,7 +123,7 @@ def _guard(text: str, name: str) -> None:
         if len(line) > MOST_LINE:
             problem = f"the line has {len(line)} characters; at most {MOST_LINE} are read."
             raise CaseError([Fault(name, number, "", show(line, 30), problem, "Break it up.")])
-        if line.split("=")[0].count(".") > 60:
+        if line.count(".") > MOST_DOTS and _QUOTED.sub("", line).count(".") > MOST_DOTS:
             problem = "is nested too deeply."
             raise CaseError([Fault(name, number, "", show(line, 30), problem, "A case needs two levels.")])
 
@@ -155,11 +157,11 @@ def _slip(line: str) -> tuple[str, str, str, str] | None:
         return match[1], f"{match[2]},{match[3]}", "has a decimal comma.", remedy
     match = re.match(r"\s*([A-Za-z_]+)\s*=\s*([-+.,0-9eE]+\s*[A-Za-zµ°%][^\"#=]*?)\s*(#.*)?$", line)
     if match:
-        remedy = f'Write {match[1]} = "{match[2].replace(",", ".")}".'
+        remedy = f'Write {match[1]} = "{printable(match[2].replace(",", "."))}".'
         return match[1], match[2], "is a value with a unit without quotes.", remedy
     match = re.match(r"\s*([A-Za-z_]+)\s*=\s*([A-Za-z][^\"'#=]*?)\s*(#.*)?$", line)
     if match:
-        return match[1], match[2], "is a text without quotes.", f'Write {match[1]} = "{match[2]}".'
+        return match[1], match[2], "is a text without quotes.", f'Write {match[1]} = "{printable(match[2])}".'
     return None
 
 
@@ -189,6 +191,8 @@ def _read_top(draft: Draft, top: dict[str, object]) -> Table:
         if name == "title":
             continue
         del top[name]
+        if draft.flooded():
+            continue
         written = "section" if isinstance(value, dict) else "list of sections" if isinstance(value, list) else "key"
         draft.fault((name,), ABSENT if written == "section" else value, *_unknown_top(name, written, known))
     return draft.read_table(section, (), top)

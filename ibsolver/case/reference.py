@@ -110,11 +110,15 @@ def _check_reference(draft: Draft, tables: Tables, body: Table | None, table: Ta
 
 
 def _reynolds_of(draft: Draft, table: Table, reynolds: float) -> float:
-    most = SECTION["tow"].key("reynolds").high
-    if reynolds > most:
+    least, most = SECTION["tow"].key("reynolds").low, SECTION["tow"].key("reynolds").high
+    name = "speed" if table.given("speed") else "profile"
+    if reynolds < least:
+        problem = f"gives a Reynolds number of {reynolds:.4g}; at least {least:g} is taken."
+        draft.table_fault(table, name, problem, "Check the units of speed, chord and viscosity.")
+    elif reynolds > most:
         problem = f"gives a Reynolds number of {reynolds:.4g}; at most {most:g} is taken."
         remedy = "A two-dimensional laminar flow is not a model of the tank there. Tow slower or use a smaller chord."
-        draft.table_fault(table, "speed" if table.given("speed") else "profile", problem, remedy)
+        draft.table_fault(table, name, problem, remedy)
     return reynolds
 
 

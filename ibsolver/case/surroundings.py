@@ -4,13 +4,14 @@ from __future__ import annotations
 
 from ibsolver.case.draft import Draft, Place, Table
 from ibsolver.case.model import Domain, Grid, Side, Tank
+from ibsolver.case.motions import Units
 from ibsolver.case.schema import SECTION
 from ibsolver.case.values import Length
 
 
-def read_tank(draft: Draft, table: Table, length: float | None) -> Tank:
+def read_tank(draft: Draft, table: Table, units: Units) -> Tank:
     """Return the tank; faults go to the draft."""
-    walls = {name: _wall(draft, table, name, length) for name in ("wall_above", "wall_below")}
+    walls = {name: _wall(draft, table, name, units) for name in ("wall_above", "wall_below")}
     if table.given("gravity") != table.given("gravity_direction"):
         missing = "gravity_direction" if table.given("gravity") else "gravity"
         example = f"Write for example {missing} = {table.section.key(missing).example}."
@@ -18,16 +19,17 @@ def read_tank(draft: Draft, table: Table, length: float | None) -> Tank:
     return Tank(**walls, gravity=table.optional("gravity"), gravity_direction=table.optional("gravity_direction"))
 
 
-def _wall(draft: Draft, table: Table, name: str, length: float | None) -> float | None:
+def _wall(draft: Draft, table: Table, name: str, units: Units) -> float | None:
     value = table.get(name)
     if not isinstance(value, Length):
         return None
-    chords = value.in_chords(length)
+    chords = value.in_chords(units.chord)
     if chords is None:
-        problem = "is a length, but the case has no chord to divide it by."
-        draft.table_fault(table, name, problem, "Write it in chords.")
-    elif chords > table.section.key(name).high:
-        draft.table_fault(table, name, f"is {chords:.4g} chords; at most 1000 are taken.", "Check its unit.")
+        if units.sound:
+            problem = "is a length, but the case has no chord to divide it by."
+            draft.table_fault(table, name, problem, "Write it in chords.")
+    elif not table.section.key(name).low <= chords <= table.section.key(name).high:
+        draft.table_fault(table, name, f"is {chords:.4g} chords; 0.01 to 1000 are taken.", "Check its unit.")
         return None
     return chords
 

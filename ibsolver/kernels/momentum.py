@@ -8,31 +8,68 @@ from ibsolver.kernels._jit import inline, parallel_kernel, prange
 
 
 @inline
-def _u_terms(u, v, x, y, j, i):
-    """Return (convection, Laplacian) of u at face (j, i), padded indices."""
-    east = 0.5 * (u[j, i] + u[j, i + 1])
-    west = 0.5 * (u[j, i - 1] + u[j, i])
-    flux_north = 0.5 * (v[j + 1, i - 1] * x[0, i - 1] + v[j + 1, i] * x[0, i])
-    flux_south = 0.5 * (v[j, i - 1] * x[0, i - 1] + v[j, i] * x[0, i])
-    across = 0.5 * (flux_north * (u[j, i] + u[j + 1, i]) - flux_south * (u[j - 1, i] + u[j, i]))
-    convection = (east * east - west * west + across * y[1, j]) * x[3, i]
-    along = ((u[j, i + 1] - u[j, i]) * x[1, i] - (u[j, i] - u[j, i - 1]) * x[1, i - 1]) * x[3, i]
-    normal = ((u[j + 1, i] - u[j, i]) * y[3, j + 1] - (u[j, i] - u[j - 1, i]) * y[3, j]) * y[1, j]
-    return convection, along + normal
+def _u_row(u, v, p, x, y, scheme, j, i0, i1, tendency, out):
+    """Predict the u faces i0 <= i < i1 of row j (padded indices).
+
+    The rows are sliced first so that the loop index is never negative, without which nothing vectorises.
+    """
+    nu, dt, a, b, explicit, pull = scheme[0], scheme[1], scheme[2], scheme[3], scheme[4], scheme[5]
+    here, west, east = u[j, i0:i1], u[j, i0 - 1 : i1 - 1], u[j, i0 + 1 : i1 + 1]
+    below, above = u[j - 1, i0:i1], u[j + 1, i0:i1]
+    south_west, south_east = v[j, i0 - 1 : i1 - 1], v[j, i0:i1]
+    north_west, north_east = v[j + 1, i0 - 1 : i1 - 1], v[j + 1, i0:i1]
+    p_west, p_east = p[j, i0 - 1 : i1 - 1], p[j, i0:i1]
+    dx_west, dx_east = x[0, i0 - 1 : i1 - 1], x[0, i0:i1]
+    per_dx_west, per_dx_east, per_distance = x[1, i0 - 1 : i1 - 1], x[1, i0:i1], x[3, i0:i1]
+    before, result = tendency[j, i0:i1], out[j, i0:i1]
+    per_dy, per_below, per_above = y[1, j], y[3, j], y[3, j + 1]
+    nu_explicit, nu_implicit = nu * explicit, nu * (1.0 - explicit)
+    for k in range(i1 - i0):
+        c = here[k]
+        u_east = 0.5 * (c + east[k])
+        u_west = 0.5 * (west[k] + c)
+        flux_north = north_west[k] * dx_west[k] + north_east[k] * dx_east[k]
+        flux_south = south_west[k] * dx_west[k] + south_east[k] * dx_east[k]
+        across = 0.25 * per_dy * (flux_north * (c + above[k]) - flux_south * (below[k] + c))
+        convection = (u_east * u_east - u_west * u_west + across) * per_distance[k]
+        along = ((east[k] - c) * per_dx_east[k] - (c - west[k]) * per_dx_west[k]) * per_distance[k]
+        normal = ((above[k] - c) * per_above - (c - below[k]) * per_below) * per_dy
+        now = nu_explicit * (along + normal) - convection
+        rate = a * now - b * before[k] + nu_implicit * (along + normal) + pull
+        rate -= (p_east[k] - p_west[k]) * per_distance[k]
+        before[k] = now
+        result[k] = c + dt * rate
 
 
 @inline
-def _v_terms(u, v, x, y, j, i):
-    """Return (convection, Laplacian) of v at face (j, i), padded indices."""
-    north = 0.5 * (v[j, i] + v[j + 1, i])
-    south = 0.5 * (v[j - 1, i] + v[j, i])
-    flux_east = 0.5 * (u[j - 1, i + 1] * y[0, j - 1] + u[j, i + 1] * y[0, j])
-    flux_west = 0.5 * (u[j - 1, i] * y[0, j - 1] + u[j, i] * y[0, j])
-    along = 0.5 * (flux_east * (v[j, i] + v[j, i + 1]) - flux_west * (v[j, i - 1] + v[j, i]))
-    convection = (north * north - south * south + along * x[1, i]) * y[3, j]
-    normal = ((v[j + 1, i] - v[j, i]) * y[1, j] - (v[j, i] - v[j - 1, i]) * y[1, j - 1]) * y[3, j]
-    streamwise = ((v[j, i + 1] - v[j, i]) * x[3, i + 1] - (v[j, i] - v[j, i - 1]) * x[3, i]) * x[1, i]
-    return convection, streamwise + normal
+def _v_row(u, v, p, x, y, scheme, j, i0, i1, tendency, out):
+    """Predict the v faces i0 <= i < i1 of row j (padded indices)."""
+    nu, dt, a, b, explicit, pull = scheme[0], scheme[1], scheme[2], scheme[3], scheme[4], scheme[6]
+    here, west, east = v[j, i0:i1], v[j, i0 - 1 : i1 - 1], v[j, i0 + 1 : i1 + 1]
+    below, above = v[j - 1, i0:i1], v[j + 1, i0:i1]
+    south_west, south_east = u[j - 1, i0:i1], u[j - 1, i0 + 1 : i1 + 1]
+    north_west, north_east = u[j, i0:i1], u[j, i0 + 1 : i1 + 1]
+    p_below, p_above = p[j - 1, i0:i1], p[j, i0:i1]
+    per_dx, per_west, per_east = x[1, i0:i1], x[3, i0:i1], x[3, i0 + 1 : i1 + 1]
+    before, result = tendency[j, i0:i1], out[j, i0:i1]
+    dy_below, dy_above, per_dy_below, per_dy_above = y[0, j - 1], y[0, j], y[1, j - 1], y[1, j]
+    per_distance = y[3, j]
+    nu_explicit, nu_implicit = nu * explicit, nu * (1.0 - explicit)
+    for k in range(i1 - i0):
+        c = here[k]
+        v_north = 0.5 * (c + above[k])
+        v_south = 0.5 * (below[k] + c)
+        flux_east = south_east[k] * dy_below + north_east[k] * dy_above
+        flux_west = south_west[k] * dy_below + north_west[k] * dy_above
+        along = 0.25 * per_dx[k] * (flux_east * (c + east[k]) - flux_west * (west[k] + c))
+        convection = (v_north * v_north - v_south * v_south + along) * per_distance
+        normal = ((above[k] - c) * per_dy_above - (c - below[k]) * per_dy_below) * per_distance
+        streamwise = ((east[k] - c) * per_east[k] - (c - west[k]) * per_west[k]) * per_dx[k]
+        now = nu_explicit * (streamwise + normal) - convection
+        rate = a * now - b * before[k] + nu_implicit * (streamwise + normal) + pull
+        rate -= (p_above[k] - p_below[k]) * per_distance
+        before[k] = now
+        result[k] = c + dt * rate
 
 
 @parallel_kernel
@@ -58,29 +95,13 @@ def predict(u, v, p, x, y, scheme, ranges, tendency_u, tendency_v, u_star, v_sta
     u_star, v_star : ndarray
         Modified in place on the given ranges only.
     """
-    nu, dt, a, b = scheme[0], scheme[1], scheme[2], scheme[3]
-    explicit, gx, gy = scheme[4], scheme[5], scheme[6]
-    nu_explicit = nu * explicit
-    nu_implicit = nu * (1.0 - explicit)
     ju0, ju1, iu0, iu1 = ranges[0], ranges[1], ranges[2], ranges[3]
     jv0, jv1, iv0, iv1 = ranges[4], ranges[5], ranges[6], ranges[7]
     for j in prange(min(ju0, jv0), max(ju1, jv1)):
         if ju0 <= j < ju1:
-            for i in range(iu0, iu1):
-                convection, laplacian = _u_terms(u, v, x, y, j, i)
-                now = nu_explicit * laplacian - convection
-                rate = a * now - b * tendency_u[j, i] + nu_implicit * laplacian + gx
-                rate -= (p[j, i] - p[j, i - 1]) * x[3, i]
-                tendency_u[j, i] = now
-                u_star[j, i] = u[j, i] + dt * rate
+            _u_row(u, v, p, x, y, scheme, j, iu0, iu1, tendency_u, u_star)
         if jv0 <= j < jv1:
-            for i in range(iv0, iv1):
-                convection, laplacian = _v_terms(u, v, x, y, j, i)
-                now = nu_explicit * laplacian - convection
-                rate = a * now - b * tendency_v[j, i] + nu_implicit * laplacian + gy
-                rate -= (p[j, i] - p[j - 1, i]) * y[3, j]
-                tendency_v[j, i] = now
-                v_star[j, i] = v[j, i] + dt * rate
+            _v_row(u, v, p, x, y, scheme, j, iv0, iv1, tendency_v, v_star)
 
 
 @parallel_kernel
@@ -100,13 +121,18 @@ def correct(phi, x, y, dt, ranges, u, v, p):
     jv0, jv1, iv0, iv1 = ranges[4], ranges[5], ranges[6], ranges[7]
     for j in prange(min(ju0, jv0), max(ju1, jv1)):
         if ju0 <= j < ju1:
-            for i in range(iu0, iu1):
-                u[j, i] -= dt * (phi[j, i] - phi[j, i - 1]) * x[3, i]
-            for i in range(1, p.shape[1] - 1):
-                p[j, i] += phi[j, i]
+            moved, phi_west, phi_east = u[j, iu0:iu1], phi[j, iu0 - 1 : iu1 - 1], phi[j, iu0:iu1]
+            per_distance = x[3, iu0:iu1]
+            for k in range(iu1 - iu0):
+                moved[k] -= dt * (phi_east[k] - phi_west[k]) * per_distance[k]
+            pressure, increment = p[j, 1:-1], phi[j, 1:-1]
+            for k in range(pressure.shape[0]):
+                pressure[k] += increment[k]
         if jv0 <= j < jv1:
-            for i in range(iv0, iv1):
-                v[j, i] -= dt * (phi[j, i] - phi[j - 1, i]) * y[3, j]
+            moved, phi_below, phi_above = v[j, iv0:iv1], phi[j - 1, iv0:iv1], phi[j, iv0:iv1]
+            factor = dt * y[3, j]
+            for k in range(iv1 - iv0):
+                moved[k] -= factor * (phi_above[k] - phi_below[k])
 
 
 @parallel_kernel

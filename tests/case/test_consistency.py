@@ -160,8 +160,8 @@ REAR = FLAP.replace("front", "rear").replace("0.12", "0.6")
         (BARE + "[output]\nframe_every = 9\n",
          "case.toml:6: output.frame_every = 9: is longer than the whole run (run.travel = 8 chords). "
          "Choose at most 8, for example 0.1."),
-        (BARE + "[output]\nframe_every = 1e-6\n",
-         "case.toml:6: output.frame_every = 1e-06: makes 8e+06 frames; at most 100000 are written. "
+        (BARE + "[output]\nframe_every = 2e-5\n",
+         "case.toml:6: output.frame_every = 2e-05: makes 4e+05 frames; at most 100000 are written. "
          "Choose at least 8e-05."),
         (BARE + "[grid]\nlargest_cell = 0.01\n",
          "case.toml:6: grid.largest_cell = 0.01: is smaller than the cells of the core, 0.01562 chords. "

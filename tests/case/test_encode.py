@@ -84,7 +84,7 @@ def test_hash_is_16_hexadecimal_digits_and_ignores_words():
 
 @pytest.mark.parametrize(
     ("old", "new"),
-    [('"15 deg"', '"15.0000001 deg"'), ('"50 mm"', '"51 mm"'), ('"20 mm/s"', '"21 mm/s"'), ('"1000 kg/m3"', '"999 kg/m3"')],
+    [("15 deg", "15.0000001 deg"), ("50 mm", "51 mm"), ("20 mm/s", "21 mm/s"), ("1000 kg/m3", "999 kg/m3")],
 )
 def test_hashes_see_every_physical_change(old, new):
     case, changed = read(PLATE), read(PLATE.replace(old, new))
@@ -121,4 +121,4 @@ def test_differences_in_words():
     found = differences(case, other)
     assert "tow.speed: 0.02 and 0.04." in found and 'flaps[0].name: nothing and "front".' in found
     assert any(sentence.startswith("tow.reynolds: ") for sentence in found)
-    assert "flaps: [] and nothing." not in found
+    assert not any("nothing and nothing" in sentence or "[]" in sentence for sentence in found)

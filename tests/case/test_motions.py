@@ -143,7 +143,7 @@ def test_seconds_need_a_dimensional_case(tmp_path):
         ('{kind = "ramp", to = "400 deg"}', "motion.incidence.to", "must be at least -180 deg and at most 180 deg."),
         ('{kind = "ramp", to = "4 deg", hold = 1}', "motion.incidence.hold", 'has no meaning for kind = "ramp".'),
         ('{kind = "ramp", to = "4 deg", duration = 0}', "motion.incidence.duration",
-         "must be greater than 0 and at most 100000."),
+         "must be at least 0.001 and at most 100000."),
         ('{kind = "ramp", to = "4 deg", start = "1 deg"}', "motion.incidence.start", "is not a key of a motion table."),
         ('{kind = "oscillation", amplitude = "4 deg"}', "motion.incidence.frequency",
          "give frequency or reduced_frequency, one of the two."),

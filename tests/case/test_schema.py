@@ -66,7 +66,7 @@ def test_names_are_unique_and_synonyms_are_not_keys():
 
 
 def test_allowed_in_words():
-    assert allowed(SECTION["run"].key("courant")) == "greater than 0 and at most 0.7"
+    assert allowed(SECTION["run"].key("courant")) == "at least 0.001 and at most 0.7"
     assert allowed(SECTION["plate"].key("incidence")) == "at least -180 deg and at most 180 deg"
     assert allowed(SECTION["flap"].key("side")) == 'one of "upper", "lower"'
     assert allowed(SECTION["grid"].key("uniform")) == "true or false"
