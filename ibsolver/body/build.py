@@ -79,9 +79,7 @@ def flap_link(flap: Flap, parent: int, case: Case, spacing: float) -> Link:
 
 def closed_link(name: str, curve: np.ndarray, spacing: float) -> Link:
     """Return the base link of a closed body whose curve is given in the base frame."""
-    points, ds = layout.along_closed_curve(
-        curve, layout.CLOSED_SPACING * spacing, layout.CLOSED_RETRACTION * spacing
-    )
+    points, ds = layout.along_closed_curve(curve, layout.CLOSED_SPACING * spacing, layout.CLOSED_RETRACTION * spacing)
     area, centroid = layout.polygon_area(curve)
     return Link(name, points, ds, curve, area=area, centroid=(float(centroid[0]), float(centroid[1])))
 

@@ -146,9 +146,7 @@ class Rig:
             arms = link.points @ _axes(angles[k])
             points.append(origins[k] + arms)
             velocities.append(origin_velocities[k] + rates[k] * _turned(arms))
-        return Placement(
-            np.concatenate(points), np.concatenate(velocities), origins, angles, rates, origin_velocities
-        )
+        return Placement(np.concatenate(points), np.concatenate(velocities), origins, angles, rates, origin_velocities)
 
     def shapes(self, placement: Placement) -> dict[str, np.ndarray]:
         """Return the outline of every link on the grid, by name, each of shape (k, 2)."""
@@ -170,7 +168,7 @@ class Rig:
             Between `LEAST_WEIGHT` and 1.
         """
         weight = np.ones(self.size)
-        for k, link in enumerate(self.links[1:], start=1):
+        for k in range(1, len(self.links)):
             mine = self.link_of_point == k
             points = placement.points[mine]
             distance = np.full(points.shape[0], np.inf)

@@ -17,6 +17,8 @@ from ibsolver.case.values import ValueFault
 MOST_BYTES = 64_000_000
 MOST_POINTS = 5000
 EXAMPLE = "0.25, 0.06"
+TEXT_FILES = (".csv", ".txt", ".dat")
+MESH_FILES = (".msh", ".vtk", ".vtu", ".mesh", ".su2", ".obj", ".ply", ".off")  # formats that name no other file
 
 Points = list[tuple[float, float]]
 
@@ -27,7 +29,7 @@ def read_outline(name: str, folder: Path | None) -> tuple[tuple[float, float], .
     Parameters
     ----------
     name : str
-        As the case names it; ``.csv``, ``.txt`` and ``.dat`` are rows of x,y, anything else is a mesh file.
+        As the case names it; its ending is one of `TEXT_FILES` (rows of x,y) or `MESH_FILES`.
     folder : Path or None
         Folder of the case.
 
@@ -37,8 +39,13 @@ def read_outline(name: str, folder: Path | None) -> tuple[tuple[float, float], .
         The file cannot be read, or the curve crosses itself, is not closed, or encloses nothing.
     """
     path = file_beside(name, folder, MOST_BYTES)
-    points = _csv_points(path, name) if path.suffix.lower() in (".csv", ".txt", ".dat") else _mesh_points(path, name)
-    return normalised_outline(points, name)
+    suffix = Path(name).suffix.lower()
+    if suffix in TEXT_FILES:
+        return normalised_outline(_csv_points(path, name), name)
+    if suffix in MESH_FILES:
+        return normalised_outline(_mesh_points(path, name), name)
+    known = ", ".join((*TEXT_FILES, *MESH_FILES))
+    raise ValueFault("is of a kind that is not read as an outline.", f"Give a file of one of {known}.", name)
 
 
 def normalised_outline(points: Points, name: str) -> tuple[tuple[float, float], ...]:

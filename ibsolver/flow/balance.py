@@ -48,7 +48,7 @@ class ControlVolume:
             mean = 0.5 * (u[rows, i] + u[rows, i + 1])
             total += sign * h * float((mean * mean - nu * (u[rows, i + 1] - u[rows, i]) / h).sum())
         for sign, j in ((1.0, j1), (-1.0, j0)):  # corners above and below
-            across = 0.5 * (v[j, i0:i1 - 1] + v[j, i0 + 1 : i1])
+            across = 0.5 * (v[j, i0 : i1 - 1] + v[j, i0 + 1 : i1])
             mean = 0.5 * (u[j - 1, columns] + u[j, columns])
             total += sign * h * float((across * mean - nu * (u[j, columns] - u[j - 1, columns]) / h).sum())
         return total
@@ -61,7 +61,7 @@ class ControlVolume:
             mean = 0.5 * (v[j, columns] + v[j + 1, columns])
             total += sign * h * float((mean * mean - nu * (v[j + 1, columns] - v[j, columns]) / h).sum())
         for sign, i in ((1.0, i1), (-1.0, i0)):  # corners right and left
-            along = 0.5 * (u[j0:j1 - 1, i] + u[j0 + 1 : j1, i])
+            along = 0.5 * (u[j0 : j1 - 1, i] + u[j0 + 1 : j1, i])
             mean = 0.5 * (v[rows, i - 1] + v[rows, i])
             total += sign * h * float((along * mean - nu * (v[rows, i] - v[rows, i - 1]) / h).sum())
         return total

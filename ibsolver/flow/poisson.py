@@ -129,9 +129,7 @@ class DenseTransform:
         dense_transform.backward(*self._modes, self.split, *self.backward_matrices, *self._parts, out)
 
 
-def _parity_families(
-    diagonal: np.ndarray, coupling: np.ndarray
-) -> list[tuple[np.ndarray, np.ndarray, np.ndarray]]:
+def _parity_families(diagonal: np.ndarray, coupling: np.ndarray) -> list[tuple[np.ndarray, np.ndarray, np.ndarray]]:
     """Split a symmetric tridiagonal matrix that is symmetric about its middle into even and odd halves.
 
     Returns

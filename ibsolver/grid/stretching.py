@@ -86,9 +86,7 @@ def stretched_faces(
     core = spacing * np.arange(first, last + 1)
     below = growing_widths(spacing, core[0] - low, ratio, largest)
     above = growing_widths(spacing, high - core[-1], ratio, largest)
-    faces = np.concatenate(
-        [core[0] - np.cumsum(below)[::-1], core, core[-1] + np.cumsum(above)]
-    )
+    faces = np.concatenate([core[0] - np.cumsum(below)[::-1], core, core[-1] + np.cumsum(above)])
     faces[0], faces[-1] = low, high
     return faces
 

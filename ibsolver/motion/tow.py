@@ -82,8 +82,10 @@ class TowLaw:
             first, last = self.profile[0], self.profile[-1]
             before = first[1] * min(t, max(first[0], 0.0))
             start = max(first[0], 0.0)
-            return before + float(self._integral(self._inside(t)) - self._integral(start)) + last[1] * max(
-                t - last[0], 0.0
+            return (
+                before
+                + float(self._integral(self._inside(t)) - self._integral(start))
+                + last[1] * max(t - last[0], 0.0)
             )
         x = min(t / self.ramp_time, 1.0)
         covered = 0.5 * x * x if self.kind == "linear" else x**4 * (2.5 - 3.0 * x + x * x)

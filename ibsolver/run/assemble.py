@@ -107,9 +107,7 @@ def start_state(case: Case, problem: Problem) -> FlowState:
     return state
 
 
-def restored_state(
-    problem: Problem, arrays: Mapping[str, np.ndarray], numbers: Mapping[str, float | int]
-) -> FlowState:
+def restored_state(problem: Problem, arrays: Mapping[str, np.ndarray], numbers: Mapping[str, float | int]) -> FlowState:
     """Return the state of a checkpoint, ready to go on.
 
     Raises

@@ -66,7 +66,10 @@ def build_grid(case: Case, reach: tuple[float, float, float, float] | None) -> S
 def _require_room(box: tuple[float, float, float, float], core: list[float], case: Case) -> None:
     """Refuse a core that reaches through a side of the domain."""
     places = (("upstream", core[0] < box[0]), ("downstream", core[1] > box[1]))
-    places += (("lateral (or the tank wall below)", core[2] < box[2]), ("lateral (or the tank wall above)", core[3] > box[3]))
+    places += (
+        ("lateral (or the tank wall below)", core[2] < box[2]),
+        ("lateral (or the tank wall above)", core[3] > box[3]),
+    )
     wrong = [name for name, bad in places if bad]
     if wrong:
         raise GridError(

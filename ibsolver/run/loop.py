@@ -22,7 +22,7 @@ from ibsolver.run.record import RESERVE_BYTES, Recorder, create_directory
 from ibsolver.run.stopping import StopRequest
 from ibsolver.runfile import layout
 from ibsolver.runfile.atomic import free_bytes, read_json, write_json
-from ibsolver.runfile.checkpoint import Checkpoint, read_latest
+from ibsolver.runfile.checkpoint import read_latest
 from ibsolver.runfile.lock import WriterLock
 
 LAST_ROWS = 20  # step records kept in the log when a run diverges
@@ -149,7 +149,9 @@ def _require_same_physics(stored: Case, wanted: Case, directory: Path) -> None:
         return
     facts = "; ".join(differences(stored, wanted))
     problem = f"the case differs from the one that {directory} was begun with: {facts}."
-    raise CaseError([Fault("case", 0, "", "", problem, "Only a longer travel and [output] may change; start a new run.")])
+    raise CaseError(
+        [Fault("case", 0, "", "", problem, "Only a longer travel and [output] may change; start a new run.")]
+    )
 
 
 def _set_threads(threads: int | None) -> int:

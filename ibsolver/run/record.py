@@ -144,9 +144,7 @@ class Recorder:
         self.history.flush(sync=True)
         self.schedule.turn += 1
         numbers = {"state": state.numbers(), "schedule": vars(self.schedule)}
-        name, digest = write_checkpoint(
-            self.directory, self.schedule.turn, state.arrays(), numbers, self._physics
-        )
+        name, digest = write_checkpoint(self.directory, self.schedule.turn, state.arrays(), numbers, self._physics)
         self._checkpoints[name] = digest
         self._checkpoint_due = time.monotonic() + self.case.output.checkpoint_every
 

@@ -9,8 +9,8 @@ from typing import Any
 import numpy as np
 
 from ibsolver.body.rig import Rig
-from ibsolver.case.model import Case
 from ibsolver.case import scales
+from ibsolver.case.model import Case
 from ibsolver.flow.advance import Problem, StepReport
 from ibsolver.flow.loads import hydrodynamic
 from ibsolver.flow.state import FlowState

@@ -47,7 +47,9 @@ def storage_error(error: OSError, path: Path | str, needed: int = 0) -> StorageE
             "then go on with `ibsolver resume`."
         )
     if error.errno in (errno.EACCES, errno.EPERM, errno.EROFS):
-        return StorageError(f"{path}: no permission to write here ({error.strerror}). Choose another folder with --out.")
+        return StorageError(
+            f"{path}: no permission to write here ({error.strerror}). Choose another folder with --out."
+        )
     return StorageError(f"{path}: {error.strerror or error}.")
 
 

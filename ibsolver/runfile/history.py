@@ -122,11 +122,10 @@ def read_history(path: Path | str) -> History:
     """
     path = Path(path)
     lines = _whole_lines(path)
-    meanings, names, first = {}, (), 0
-    for first, line in enumerate(lines):
-        if not line.startswith("#"):
-            names = tuple(line.split(","))
-            break
+    first = next((k for k, line in enumerate(lines) if not line.startswith("#")), len(lines))
+    names = tuple(lines[first].split(",")) if first < len(lines) else ()
+    meanings = {}
+    for line in lines[:first]:
         name, _, meaning = line[1:].strip().partition(": ")
         meanings[name] = meaning
     if not names or names[0] != "step":

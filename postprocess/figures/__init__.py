@@ -1,1 +1,1 @@
-"""Figures: the only room that imports matplotlib."""
+"""The only folder that imports matplotlib. Figures take plain arrays and words; they compute no physics."""

@@ -37,8 +37,12 @@ def test_flaps_open_away_from_their_side_with_the_tip_toward_the_trailing_edge()
     openings = (math.radians(20), math.radians(30))
     shapes = rig.shapes(rig.place(Configuration(openings=openings, opening_rates=(0, 0))))
     np.testing.assert_allclose(shapes["front"][0], [0.12 - 0.25, 0.0], atol=1e-15)
-    np.testing.assert_allclose(shapes["front"][1] - shapes["front"][0], 0.2 * np.array([math.cos(openings[0]), math.sin(openings[0])]))
-    np.testing.assert_allclose(shapes["rear"][1] - shapes["rear"][0], 0.25 * np.array([math.cos(openings[1]), -math.sin(openings[1])]))
+    np.testing.assert_allclose(
+        shapes["front"][1] - shapes["front"][0], 0.2 * np.array([math.cos(openings[0]), math.sin(openings[0])])
+    )
+    np.testing.assert_allclose(
+        shapes["rear"][1] - shapes["rear"][0], 0.25 * np.array([math.cos(openings[1]), -math.sin(openings[1])])
+    )
 
 
 @settings(max_examples=30, deadline=None)
@@ -91,7 +95,9 @@ def test_weights_are_one_far_from_the_plate_and_least_on_it():
 def test_weights_change_smoothly_as_a_flap_opens():
     rig = rig_of(FRONT)
     angles = np.linspace(0, 0.6, 601)
-    history = np.array([rig.weights(rig.place(Configuration(openings=(a,), opening_rates=(0.0,))), 1 / 64) for a in angles])
+    history = np.array(
+        [rig.weights(rig.place(Configuration(openings=(a,), opening_rates=(0.0,))), 1 / 64) for a in angles]
+    )
     assert np.abs(np.diff(history, axis=0)).max() < 0.05
 
 

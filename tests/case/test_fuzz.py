@@ -74,7 +74,8 @@ _values = st.one_of(
     st.sampled_from(
         ["true", "[]", "{}", '""', "1979-05-27", "[1, 2]", '["3 deg", "80 deg"]', '{kind = "ramp", to = "5 deg"}',
          '{kind = "oscillation", amplitude = 0.1, reduced_frequency = 1}', '{condition = "no slip", speed = 1}',
-         "1e400", '"slip"', '"smooth"', '"impulsive"', '"hold acceleration"', '"free"', '"driven"', '"fixed"', '"periodic"', '"no slip"',
+         "1e400", '"slip"', '"smooth"', '"impulsive"', '"hold acceleration"', '"no slip"',
+         '"free"', '"driven"', '"fixed"', '"periodic"',
          '"fresh water"', '"air"', '"given"', '"x.csv"', '"plate"', '"upper"', '"inflow"', '"rest"', '"taylor green"'],
     ),
     st.tuples(st.floats(), st.sampled_from(UNITS)).map(lambda pair: f'"{pair[0]!r} {pair[1]}"'),

@@ -116,7 +116,8 @@ def test_an_outline_in_a_case(tmp_path):
 
 def write_mesh(path, points, cells):
     meshio = pytest.importorskip("meshio")
-    meshio.write_points_cells(path, points, cells)
+    kind = {"file_format": "gmsh", "binary": False} if path.suffix == ".msh" else {}
+    meshio.write_points_cells(path, points, cells, **kind)
 
 
 def ring(count, radius, start):
@@ -125,7 +126,7 @@ def ring(count, radius, start):
     return points, [[start + i, start + (i + 1) % count] for i in range(count)]
 
 
-@pytest.mark.parametrize("suffix", ["vtk", "vtu"])
+@pytest.mark.parametrize("suffix", ["vtk", "vtu", "msh", "mesh"])
 def test_boundary_lines_of_a_mesh_are_chained_and_the_outer_loop_taken(tmp_path, suffix):
     inner, inner_lines = ring(12, 1.0, 0)
     outer, outer_lines = ring(24, 4.0, 12)
@@ -158,13 +159,20 @@ def test_meshes_that_hold_no_outline(tmp_path, points, cells, problem):
         read_outline("body.vtk", tmp_path)
 
 
-@pytest.mark.parametrize("name", ["body.vtk", "body.msh", "body.stl", "body.xdmf", "body.unknown", "body"])
+@pytest.mark.parametrize("name", ["body.vtk", "body.msh", "body.vtu", "body.su2", "body.obj", "body.ply"])
 def test_damaged_mesh_files_are_refused_in_silence(tmp_path, capfd, name):
     (tmp_path / name).write_bytes(b"# vtk DataFile Version 3.0\n\x00\xff nonsense $MeshFormat")
     with pytest.raises(ValueFault) as caught:
         read_outline(name, tmp_path)
     assert caught.value.problem.startswith("cannot be read as a mesh") and caught.value.file == name
     assert capfd.readouterr() == ("", "")
+
+
+@pytest.mark.parametrize("name", ["body", "body.xdmf", "body.inp", "body.png", "body.csv.gz"])
+def test_other_kinds_of_files_are_refused(tmp_path, name):
+    (tmp_path / name).write_text(SQUARE)
+    with pytest.raises(ValueFault, match="is of a kind that is not read as an outline"):
+        read_outline(name, tmp_path)
 
 
 def test_quadratic_lines_keep_their_middle_points():

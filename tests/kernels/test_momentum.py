@@ -74,8 +74,12 @@ def test_row_health_sees_a_single_bad_number(form):
 @pytest.mark.parametrize("form", [compiled, plain])
 def test_corner_vorticity_of_solid_rotation(form):
     grid = odd_grid(7, 5)
-    x = np.concatenate([[grid.x_centres[0] - grid.dx_centres[1]], grid.x_centres, [grid.x_centres[-1] + grid.dx_centres[-2]]])
-    y = np.concatenate([[grid.y_centres[0] - grid.dy_centres[1]], grid.y_centres, [grid.y_centres[-1] + grid.dy_centres[-2]]])
+    x = np.concatenate(
+        [[grid.x_centres[0] - grid.dx_centres[1]], grid.x_centres, [grid.x_centres[-1] + grid.dx_centres[-2]]]
+    )
+    y = np.concatenate(
+        [[grid.y_centres[0] - grid.dy_centres[1]], grid.y_centres, [grid.y_centres[-1] + grid.dy_centres[-2]]]
+    )
     u = -np.outer(y, np.ones(grid.nx + 3))
     v = np.outer(np.ones(grid.ny + 3), x)
     out = np.empty((grid.ny + 1, grid.nx + 1))

@@ -1,0 +1,83 @@
+"""Loads of a run against travel and time: CSV, plot, means, peaks, spectrum.
+
+Coefficients, and millinewtons where the case has a fluid, chord and span. With --cutoff or --cutoff-hz the loads are
+filtered as in the laboratory: resampled at an even rate, then low-passed; raw and filtered stand side by side.
+"""
+
+from __future__ import annotations
+
+import argparse
+from pathlib import Path
+from typing import Any
+
+EXAMPLES = ("forces runs/plate", "forces runs/plate --cutoff-hz 2 --rate-hz 100 --causal --window 2 8")
+
+
+def add_arguments(parser: argparse.ArgumentParser) -> None:
+    """Add the verb's arguments."""
+    parser.add_argument("directory", metavar="DIR", help="run directory, finished or not")
+    parser.add_argument("--csv", metavar="FILE", type=Path, help="CSV file (default: DIR/forces.csv)")
+    parser.add_argument("--plot", metavar="FILE", type=Path, help="PNG file (default: DIR/forces.png)")
+    parser.add_argument(
+        "--window", nargs=2, type=float, metavar=("FROM", "TO"), help="travel for means, chords (default: second half)"
+    )
+    parser.add_argument(
+        "--cutoff-hz", type=float, metavar="F", help="cut-off of the low-pass filter, Hz (default: no filter)"
+    )
+    parser.add_argument("--cutoff", type=float, metavar="F", help="the same in U/c, for dimensionless runs")
+    parser.add_argument("--order", type=int, default=4, metavar="N", help="order of the filter, 1 to 10 (default: 4)")
+    parser.add_argument(
+        "--filter", default="butterworth", metavar="KIND", help="butterworth or bessel (default: butterworth)"
+    )
+    parser.add_argument(
+        "--causal", action="store_true", help="run the filter once, with its delay (default: zero phase)"
+    )
+    parser.add_argument(
+        "--rate-hz", type=float, metavar="F", help="sample rate of the laboratory, Hz (default: fine enough)"
+    )
+
+
+def execute(options: argparse.Namespace) -> dict[str, Any]:
+    """Write the files and return the summary."""
+    import postprocess
+
+    summary = postprocess.forces(
+        options.directory,
+        options.csv,
+        options.plot,
+        cutoff=options.cutoff,
+        cutoff_hz=options.cutoff_hz,
+        order=options.order,
+        kind=options.filter,
+        zero_phase=not options.causal,
+        rate_hz=options.rate_hz,
+        window=tuple(options.window) if options.window else None,
+    )
+    if not (options.json or options.quiet):
+        print("\n".join(lines(summary)))
+    return summary
+
+
+def lines(summary: dict[str, Any]) -> list[str]:
+    """Return the summary as lines for a terminal."""
+    low, high = summary["window_travel"]
+    text = [f"{summary['title']}", f"mean over travel {low:.3g} to {high:.3g} chords, and peak of the whole run:"]
+    units = {"lift_mN": "lift (mN)", "drag_mN": "drag (mN)", "CL": "C_L", "CD": "C_D", "CM": "C_M"}
+    for name, mean in summary["means"].items():
+        peak = summary["peaks"][name]
+        text.append(
+            f"  {units[name]:<10} {mean['mean']:9.4f} +- {mean['half_width_95']:.4f}   peak {peak['value']:9.4f} "
+            f"at {peak['travel']:.2f} chords"
+        )
+    if not all(mean["interval_trusted"] for mean in summary["means"].values()):
+        text.append("  The +- is 95 % by batch means; the window is short against the shedding, so take it as a guess.")
+    if summary["strouhal"]:
+        text.append(
+            f"Strouhal number {summary['strouhal']['value']:.4f} (resolution {summary['strouhal']['resolution']:.4f})"
+        )
+    text.append(
+        f"lift on the bodies against momentum balance: within {100 * summary['balance_error']:.2g} % of the peak"
+    )
+    if summary["filter"]:
+        text.append(f"filter: {summary['filter']}")
+    return [*text, summary["caution"], *summary["files"]]

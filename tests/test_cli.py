@@ -1,0 +1,138 @@
+"""The command line as a user meets it: exit statuses, sentences, streams."""
+
+from __future__ import annotations
+
+import json
+import os
+import subprocess
+import sys
+from pathlib import Path
+
+import pytest
+
+from tests.runs import SMALL_CASE, write_case
+
+ROOT = Path(__file__).resolve().parent.parent
+
+
+def ibsolver(*words, cwd, **environment):
+    command = [sys.executable, "-m", "ibsolver", *map(str, words)]
+    env = {**os.environ, "PYTHONPATH": str(ROOT), **environment}
+    return subprocess.run(command, capture_output=True, text=True, cwd=cwd, env=env)
+
+
+def test_no_words_gives_help_and_status_2(tmp_path):
+    done = ibsolver(cwd=tmp_path)
+    assert done.returncode == 2 and "first steps" in done.stdout
+
+
+def test_version(tmp_path):
+    done = ibsolver("--version", cwd=tmp_path)
+    assert done.returncode == 0 and done.stdout.startswith("ibsolver ")
+
+
+@pytest.mark.parametrize("verb", ["new", "check", "run", "forces", "picture"])
+def test_help_of_every_verb_has_two_examples(tmp_path, verb):
+    done = ibsolver(verb, "--help", cwd=tmp_path)
+    assert done.returncode == 0
+    assert done.stdout.partition("examples:")[2].count(f"ibsolver {verb} ") >= 2
+    assert "--json" in done.stdout and "--quiet" in done.stdout
+
+
+@pytest.mark.parametrize(
+    ("words", "sentence"),
+    [
+        (["chek"], "Did you mean 'check'?"),
+        (["fly"], "There are: new, check"),
+        (["run"], "required: CASE"),
+        (["run", "x.toml", "--thread", "many"], "See `ibsolver run --help`"),
+        (["picture", "nowhere"], "no such run directory"),
+    ],
+)
+def test_wrong_usage_is_a_sentence_and_status_2(tmp_path, words, sentence):
+    done = ibsolver(*words, cwd=tmp_path)
+    assert done.returncode == 2 and sentence in done.stderr and "Traceback" not in done.stderr
+    assert done.stdout == ""
+
+
+def test_every_fault_of_a_case_is_told_at_once_with_its_line(tmp_path):
+    text = (
+        SMALL_CASE.replace('"18 deg"', "18")
+        .replace("length = 0.3", "lenght = 0.3")
+        .replace("reynolds = 300", "reynolds = -3")
+    )
+    done = ibsolver("check", write_case(tmp_path, text), cwd=tmp_path)
+    assert done.returncode == 3 and "Traceback" not in done.stderr
+    for words in ('"18 deg"', "length", "reynolds"):
+        assert words in done.stderr
+    assert done.stderr.count("small.toml:") >= 3
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "words"),
+    [
+        ('"25 deg"', '"-10 deg"', "opening"),
+        ("frame_every = 0.1", "frame_every = 5", "frame_every"),
+        ("cells_per_chord = 24", "cells_per_chord = 90000", "at most 2048"),
+        ("travel = 0.6", "travel = nan", "travel"),
+        ("hinge = 0.12", "hinge = 1.4", "hinge"),
+        ("length = 0.3", "length = 30", "length"),
+    ],
+)
+def test_wrong_cases_give_status_3(tmp_path, old, new, words):
+    done = ibsolver("run", write_case(tmp_path, SMALL_CASE.replace(old, new)), cwd=tmp_path)
+    assert done.returncode == 3, done.stderr
+    assert words in done.stderr and "Traceback" not in done.stderr
+
+
+def test_new_check_run_forces_picture(tmp_path):
+    case = write_case(tmp_path)
+    checked = ibsolver("check", case, "--json", "--picture", cwd=tmp_path)
+    assert checked.returncode == 0, checked.stderr
+    numbers = json.loads(checked.stdout)
+    assert numbers["cost"]["steps"] > 10 and numbers["cost"]["ns_per_cell_step"] > 0
+    assert numbers["tank"]["tow_length"] == pytest.approx(0.036)
+    assert (tmp_path / "small.png").exists()
+
+    ran = ibsolver("run", case, "--json", cwd=tmp_path)
+    assert ran.returncode == 0, ran.stderr
+    result = json.loads(ran.stdout)
+    assert result["state"] == "finished" and result["directory"] == "runs/small"
+    assert {Path(f).name for f in result["files"]} == {"forces.csv", "forces.png", "vorticity.png"}
+    assert "C_L" in ran.stderr and "left" in ran.stderr
+
+    again = ibsolver("run", case, cwd=tmp_path)
+    assert again.returncode == 5 and "not overwritten" in again.stderr
+    drawn = ibsolver("picture", "runs/small", "--travel", 0.3, "--out", "w.png", "--quiet", cwd=tmp_path)
+    assert drawn.returncode == 0 and drawn.stdout == "" and (tmp_path / "w.png").exists()
+    told = ibsolver("forces", "runs/small", "--cutoff-hz", "0.05", cwd=tmp_path)
+    assert told.returncode == 0 and "Two-dimensional" in told.stdout and "filter: butterworth" in told.stdout
+
+
+def test_bare_and_quiet_write_no_plots_and_no_words(tmp_path):
+    done = ibsolver("run", write_case(tmp_path), "--out", "r", "--bare", "--quiet", cwd=tmp_path)
+    assert done.returncode == 0 and done.stderr == ""
+    assert not (tmp_path / "r" / "forces.png").exists()
+
+
+def test_new_writes_what_check_accepts_and_never_overwrites(tmp_path):
+    made = ibsolver("new", "plate-with-flap", "--out", "p.toml", cwd=tmp_path)
+    assert made.returncode == 0 and "ibsolver check p.toml" in made.stdout
+    assert ibsolver("check", "p.toml", "--no-timing", cwd=tmp_path).returncode == 0
+    assert ibsolver("new", "plate-with-flap", "--out", "p.toml", cwd=tmp_path).returncode == 5
+    wrong = ibsolver("new", "plat", cwd=tmp_path)
+    assert wrong.returncode == 2 and "Did you mean 'plate'?" in wrong.stderr
+
+
+def test_a_fault_of_ours_is_one_sentence_and_status_1(tmp_path):
+    """A broken installation, as from a file that does not belong there."""
+    (tmp_path / "tomllib.py").write_text("raise RuntimeError('broken')")
+    done = ibsolver("check", write_case(tmp_path), cwd=tmp_path, PYTHONPATH=f"{tmp_path}{os.pathsep}{ROOT}")
+    assert done.returncode == 1
+    assert "a fault of ours" in done.stderr and "IBSOLVER_TRACEBACK=1" in done.stderr and "Traceback" not in done.stderr
+
+
+def test_a_closed_pipe_is_no_fault(tmp_path):
+    command = f"{sys.executable} -m ibsolver new plate-with-flap | head -n 1"
+    done = subprocess.run(["bash", "-c", command], capture_output=True, text=True, cwd=ROOT)
+    assert "Traceback" not in done.stderr and "Exception" not in done.stderr
