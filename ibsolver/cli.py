@@ -29,8 +29,11 @@ VERBS = (
     Verb("new", "new", "write a commented starter case"),
     Verb("check", "check", "read a case and tell what a run would be, before any run"),
     Verb("run", "run", "march a case to the end of its travel"),
+    Verb("status", "status", "state, progress and time left of a run"),
+    Verb("resume", "resume", "go on with a run from its last checkpoint"),
     Verb("forces", "forces", "loads against time: CSV, plot, means, peaks, spectrum"),
     Verb("picture", "picture", "vorticity stills at chosen travels"),
+    Verb("doctor", "doctor", "is this machine set up to run overnight?"),
 )
 
 _FIRST_STEPS = """\

@@ -136,3 +136,46 @@ def test_a_closed_pipe_is_no_fault(tmp_path):
     command = f"{sys.executable} -m ibsolver new plate-with-flap | head -n 1"
     done = subprocess.run(["bash", "-c", command], capture_output=True, text=True, cwd=ROOT)
     assert "Traceback" not in done.stderr and "Exception" not in done.stderr
+
+
+def test_status_and_resume_after_a_signal(tmp_path):
+    import signal
+    import time
+
+    text = SMALL_CASE.replace("travel = 0.6", "travel = 60").replace("frame_every = 0.1", "frame_every = 1")
+    case = write_case(tmp_path, text)
+    command = [sys.executable, "-m", "ibsolver", "run", str(case), "--out", "r"]
+    env = {**os.environ, "PYTHONPATH": str(ROOT)}
+    process = subprocess.Popen(command, cwd=tmp_path, env=env, stderr=subprocess.PIPE, text=True)
+    while not (tmp_path / "r" / "frames" / "000001.h5").exists():
+        time.sleep(0.05)
+    running = json.loads(ibsolver("status", "r", "--json", cwd=tmp_path).stdout)
+    assert running["state"] == "running" and running["travel_end"] == 60
+    locked = ibsolver("resume", "r", cwd=tmp_path)
+    assert locked.returncode == 5 and "is writing this run" in locked.stderr
+    process.send_signal(signal.SIGHUP)
+    assert process.wait(10) == 7
+    assert "SIGHUP" in process.stderr.read()
+    process.stderr.close()
+    told = ibsolver("status", "r", cwd=tmp_path)
+    assert "interrupted" in told.stdout and "ibsolver resume r" in told.stdout
+
+    edited = (tmp_path / "r" / "case.toml").read_text().replace("reynolds = 300", "reynolds = 400")
+    kept = (tmp_path / "r" / "case.toml").read_text()
+    (tmp_path / "r" / "case.toml").write_text(edited)
+    refused = ibsolver("resume", "r", cwd=tmp_path)
+    assert refused.returncode == 3 and "reynolds: 300" in refused.stderr
+    (tmp_path / "r" / "case.toml").write_text(kept)
+    shorter = ibsolver("resume", "r", "--travel", "3", cwd=tmp_path)
+    assert shorter.returncode == 2 and "only a longer one" in shorter.stderr
+
+
+def test_doctor_tells_what_to_do(tmp_path):
+    done = ibsolver("doctor", "--json", cwd=tmp_path)
+    assert done.returncode == 0, done.stderr
+    findings = {f["name"]: f for f in json.loads(done.stdout)["findings"]}
+    assert {"threads", "two threads against one", "BLAS", "compiled kernels", "disk", "movie encoder", "sleep"} == set(
+        findings
+    )
+    assert "MB/s" in findings["disk"]["found"] and all(f["good"] or f["advice"] for f in findings.values())
+    assert list(tmp_path.iterdir()) == []

@@ -9,7 +9,8 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
-from ibsolver.case.encode import case_hash, decode, differences, encode, physics_hash
+from ibsolver.case.encode import differences, physics_hash
+from ibsolver.case.estimate import memory_bytes
 from ibsolver.case.model import Case
 from ibsolver.errors import CaseError, DivergedError, Fault, IbsolverError, InterruptedRun, StorageError
 from ibsolver.flow.advance import Problem, StepReport, advance
@@ -18,11 +19,12 @@ from ibsolver.kernels import _jit
 from ibsolver.run.assemble import assemble, restored_state, start_state
 from ibsolver.run.forecast import forecast
 from ibsolver.run.progress import Clock, Progress
-from ibsolver.run.record import RESERVE_BYTES, Recorder, create_directory
+from ibsolver.run.directory import create_directory, decoded, edited_case, write_case
+from ibsolver.run.record import RESERVE_BYTES, Recorder
 from ibsolver.run.stopping import StopRequest
 from ibsolver.runfile import layout
-from ibsolver.runfile.atomic import free_bytes, read_json, write_json
-from ibsolver.runfile.checkpoint import read_latest
+from ibsolver.runfile.atomic import free_bytes, free_memory, read_json
+from ibsolver.runfile.checkpoint import has_checkpoint, read_latest
 from ibsolver.runfile.lock import WriterLock
 
 LAST_ROWS = 20  # step records kept in the log when a run diverges
@@ -92,6 +94,7 @@ def run_case(
     directory = Path(out)
     with _jit.one_blas_thread():
         used = _set_threads(threads)
+        _require_memory(case)
         problem = assemble(case)
         _require_space(case, problem, directory)
         create_directory(case, directory, case_text if case_text is not None else case.text, overwrite)
@@ -117,7 +120,8 @@ def resume_case(
     out : path
         Run directory.
     case : Case, optional
-        The case with a longer travel or other output settings; the one in the directory by default.
+        The case with a longer travel or other output settings. By default the ``case.toml`` in the directory, which may
+        have been edited likewise.
 
     Raises
     ------
@@ -125,23 +129,27 @@ def resume_case(
         If nothing can be resumed, or the case differs in anything else (the message says in what).
     """
     directory = Path(out)
-    stored = decode(read_json(directory / layout.RESOLVED))
-    wanted = case or stored
+    resolved = read_json(directory / layout.RESOLVED)
+    stored = decoded(resolved, directory)
+    wanted = case or edited_case(directory, resolved) or stored
     _require_same_physics(stored, wanted, directory)
-    checkpoint = read_latest(directory, physics_hash(stored))
+    checkpoint = read_latest(directory, physics_hash(stored)) if has_checkpoint(directory) else None
     with _jit.one_blas_thread(), WriterLock(directory) as lock:
         used = _set_threads(threads)
+        _require_memory(wanted)
         problem = assemble(wanted)
-        state = restored_state(problem, checkpoint.arrays, checkpoint.numbers["state"])
-        _store_wanted(directory, wanted, stored)
+        if wanted != stored:
+            write_case(directory, wanted, (directory / layout.CASE).read_text() if case is None else case.text)
+        if checkpoint is None:
+            state, facts = start_state(wanted, problem), {"checkpoint": "none yet: begun anew"}
+        else:
+            state = restored_state(problem, checkpoint.arrays, checkpoint.numbers["state"])
+            facts = {"checkpoint": checkpoint.file, "skipped": list(checkpoint.skipped)}
         recorder = Recorder(wanted, problem, directory, lock, checkpoint)
-        recorder.log.write("resumed", step=state.step, checkpoint=checkpoint.file, skipped=list(checkpoint.skipped))
+        recorder.log.write("resumed", step=state.step, **facts)
+        if checkpoint is None:
+            recorder.start_frame(state)
         return _march(wanted, problem, state, recorder, used, progress)
-
-
-def _store_wanted(directory: Path, wanted: Case, stored: Case) -> None:
-    if wanted != stored:
-        write_json(directory / layout.RESOLVED, {**encode(wanted), "case_hash": case_hash(wanted)})
 
 
 def _require_same_physics(stored: Case, wanted: Case, directory: Path) -> None:
@@ -179,11 +187,27 @@ def _require_space(case: Case, problem: Problem, directory: Path) -> None:
         )
 
 
+def _require_memory(case: Case) -> None:
+    """Refuse a run that will not fit into the memory that is free now.
+
+    Raises
+    ------
+    StorageError
+        With the bytes needed and free.
+    """
+    needed, free = memory_bytes(case), free_memory()
+    if free is not None and needed > free:
+        raise StorageError(
+            f"The run needs about {needed / 1e9:.2f} GB of memory and {free / 1e9:.2f} GB are free. Close other programs, "
+            f"or lower grid.cells_per_chord ({case.grid.cells_per_chord:g})."
+        )
+
+
 def _march(
     case: Case, problem: Problem, state: FlowState, recorder: Recorder, threads: int, watch: Watcher | None
 ) -> RunResult:
     """March to the end of the travel; leave status, manifest and files whole whatever happens."""
-    clock = Clock(state.time, problem.time_end)
+    clock = Clock(problem.time_end)
     first_step, solves = state.step, 0
     last: deque[dict[str, float]] = deque(maxlen=LAST_ROWS)
     name, facts = "failed", {}

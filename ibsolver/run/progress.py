@@ -34,11 +34,18 @@ class Progress:
 
 
 class Clock:
-    """Wall time of a run, and how long the rest may take."""
+    """Wall time of a run, and how long the rest may take.
 
-    def __init__(self, time_start: float, time_end: float):
+    Parameters
+    ----------
+    time_end : float
+        Convective time at the end of the travel.
+    """
+
+    def __init__(self, time_end: float):
         self._begin = time.monotonic()
-        self._from, self._to = time_start, time_end
+        self._end = time_end
+        self._first: tuple[float, float] | None = None
 
     @property
     def elapsed(self) -> float:
@@ -46,6 +53,11 @@ class Clock:
         return time.monotonic() - self._begin
 
     def seconds_left(self, now: float) -> float:
-        """Return the estimated wall time to the end, given the convective time reached."""
-        done = now - self._from
-        return self.elapsed / done * max(self._to - now, 0.0) if done > 0 else float("nan")
+        """Return the estimated wall time to the end, given the convective time reached.
+
+        The first call only starts the estimate (the first step may compile): nan.
+        """
+        if self._first is None:
+            self._first = (self.elapsed, now)
+        wall, done = self.elapsed - self._first[0], now - self._first[1]
+        return wall / done * max(self._end - now, 0.0) if done > 0 else float("nan")

@@ -3,21 +3,20 @@
 from __future__ import annotations
 
 import math
-import shutil
 import time
 from collections.abc import Mapping
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
-from ibsolver.case.encode import case_hash, encode, physics_hash
+from ibsolver.case.encode import case_hash, physics_hash
 from ibsolver.case.model import Case
 from ibsolver.errors import StorageError
 from ibsolver.flow.advance import Problem
 from ibsolver.flow.state import FlowState
 from ibsolver.run.sampling import SIGNS, HistorySampler, frame_arrays, frame_attributes
 from ibsolver.runfile import layout, manifest
-from ibsolver.runfile.atomic import free_bytes, write_bytes, write_json
+from ibsolver.runfile.atomic import free_bytes, write_json
 from ibsolver.runfile.checkpoint import Checkpoint, write_checkpoint
 from ibsolver.runfile.frame import write_frame
 from ibsolver.runfile.history import HistoryWriter
@@ -40,11 +39,14 @@ class Schedule:
         Travel at which the next frame is due (chords).
     turn : int
         Checkpoints written.
+    frame_step : int
+        Step of the last frame, -1 before the first.
     """
 
     frames: int = 0
     next_travel: float = 0.0
     turn: int = 0
+    frame_step: int = -1
 
 
 class Recorder:
@@ -77,10 +79,11 @@ class Recorder:
         self._checkpoints: dict[str, str] = {}
         self._started = now_utc()
         self._acceleration = 0.0
-        self._frame_step = -1
-        if checkpoint is not None:
+        if checkpoint is None:
+            self._drop_frames_from(0)
+        else:
             numbers = checkpoint.numbers["schedule"]
-            self.schedule = Schedule(int(numbers["frames"]), float(numbers["next_travel"]), int(numbers["turn"]))
+            self.schedule = Schedule(**numbers)
             self._drop_frames_from(self.schedule.frames)
         comments = {"case": case.title, "case hash": self._hash, "signs": SIGNS}
         resume_after = None if checkpoint is None else int(checkpoint.numbers["state"]["step"])
@@ -110,14 +113,14 @@ class Recorder:
         attributes = frame_attributes(self.case, state, self._hash)
         self._keep_reserve(path)
         write_frame(path, arrays, self.problem.shapes, attributes)
-        self._frame_step = state.step
+        self.schedule.frame_step = state.step
         self.schedule.frames += 1
         every = self.case.output.frame_every
         self.schedule.next_travel = every * (math.floor(state.travel / every + 1e-9) + 1)
 
     def last_frame(self, state: FlowState) -> None:
         """Write the end of the travel as a frame, if the schedule has not just done so."""
-        if self._frame_step != state.step:
+        if self.schedule.frame_step != state.step:
             self._frame(state)
 
     def _keep_reserve(self, path: Path) -> None:
@@ -175,38 +178,3 @@ class Recorder:
             self.directory / layout.MANIFEST,
             manifest.collect(case_hash=self._hash, started=self._started, stopped=now_utc(), **facts),
         )
-
-
-def create_directory(case: Case, directory: Path, case_text: str | None, overwrite: bool) -> None:
-    """Make a run directory with the case in it.
-
-    Raises
-    ------
-    StorageError
-        If it exists with anything in it and `overwrite` is not set, or cannot be written.
-    """
-    if directory.exists() and (not directory.is_dir() or any(directory.iterdir())):
-        if not overwrite:
-            raise StorageError(
-                f"{directory}: exists already and is not overwritten. Choose another --out, go on with `ibsolver resume "
-                f"{directory}`, or say --overwrite."
-            )
-        _remove_old_run(directory)
-    try:
-        (directory / layout.FRAMES).mkdir(parents=True, exist_ok=True)
-    except OSError as error:
-        raise StorageError(f"{directory}: cannot be made ({error.strerror}).") from error
-    if case_text is not None:
-        write_bytes(directory / layout.CASE, case_text.encode())
-    write_json(directory / layout.RESOLVED, {**encode(case), "case_hash": case_hash(case)})
-
-
-def _remove_old_run(directory: Path) -> None:
-    """Remove an earlier run's own files, and nothing else that may lie there."""
-    if not directory.is_dir():
-        raise StorageError(f"{directory}: is a file, not a run directory.")
-    names = [layout.CASE, layout.RESOLVED, layout.MANIFEST, layout.STATUS, layout.LOG, layout.HISTORY]
-    with WriterLock(directory):
-        for name in (*names, *layout.CHECKPOINTS):
-            (directory / name).unlink(missing_ok=True)
-        shutil.rmtree(directory / layout.FRAMES, ignore_errors=True)

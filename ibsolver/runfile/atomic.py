@@ -61,6 +61,17 @@ def free_bytes(folder: Path) -> int:
     return shutil.disk_usage(folder).free
 
 
+def free_memory() -> float | None:
+    """Return the bytes of memory that can be had without swapping, None where the system does not tell."""
+    try:
+        for line in Path("/proc/meminfo").read_text().splitlines():
+            if line.startswith("MemAvailable:"):
+                return 1024.0 * int(line.split()[1])
+    except (OSError, ValueError, IndexError):
+        pass
+    return None
+
+
 def sync_folder(folder: Path) -> None:
     """Make a rename durable; a file system that cannot sync folders is left as it is."""
     try:

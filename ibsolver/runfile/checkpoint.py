@@ -63,6 +63,11 @@ def write_checkpoint(
     return name, hashlib.sha256(data).hexdigest()
 
 
+def has_checkpoint(directory: Path | str) -> bool:
+    """Return whether a run has written a checkpoint, whole or not."""
+    return any((Path(directory) / name).exists() for name in CHECKPOINTS)
+
+
 def read_latest(directory: Path | str, physics_hash: str | None = None) -> Checkpoint:
     """Return the newest whole checkpoint of a run; a damaged one falls back to the other.
 
@@ -81,8 +86,10 @@ def read_latest(directory: Path | str, physics_hash: str | None = None) -> Check
         except StorageError as error:
             wrong.append(str(error))
     if not found:
-        reason = " ".join(wrong) or "There is none yet: the run ended before its first checkpoint."
-        raise StorageError(f"{directory}: no usable checkpoint. {reason} Start the run anew with `ibsolver run`.")
+        reason = " ".join(wrong) or "There is none yet: the run ended before its first one."
+        raise StorageError(
+            f"{directory}: no usable checkpoint. {reason} Start it anew with `ibsolver run --overwrite`."
+        )
     turn, checkpoint = max(found, key=lambda pair: pair[0])
     return Checkpoint(checkpoint.arrays, checkpoint.numbers, checkpoint.file, tuple(wrong))
 

@@ -18,7 +18,8 @@ from ibsolver.errors import StorageError
 from ibsolver.runfile.atomic import storage_error
 
 LARGEST_FILE = 8 << 30
-LARGEST_DATASET = 4 << 30
+INFLATION = 1100  # deflate packs at most about 1030 to 1 (RFC 1951); what claims more is damaged
+SMALL = 64 << 20  # always allowed
 
 
 def image(
@@ -73,7 +74,7 @@ def contents(path: Path | str) -> tuple[dict[str, np.ndarray], dict[str, Any]]:
     try:
         with h5py.File(io.BytesIO(data), "r") as file:
             datasets: dict[str, np.ndarray] = {}
-            _collect(file, "", datasets, path)
+            _collect(file, "", datasets, path, [max(SMALL, INFLATION * len(data))])
             return datasets, {str(name): _plain(value) for name, value in file.attrs.items()}
     except StorageError:
         raise
@@ -81,8 +82,8 @@ def contents(path: Path | str) -> tuple[dict[str, np.ndarray], dict[str, Any]]:
         raise StorageError(f"{path}: damaged or not an HDF5 file of ours ({type(error).__name__}).") from None
 
 
-def _collect(group: h5py.Group, prefix: str, datasets: dict[str, np.ndarray], path: Path) -> None:
-    """Read every dataset of a group into memory, bounding each before it is allocated."""
+def _collect(group: h5py.Group, prefix: str, datasets: dict[str, np.ndarray], path: Path, allowance: list[int]) -> None:
+    """Read every dataset of a group into memory, bounding their sum before it is allocated."""
     if prefix.count("/") > 4 or len(datasets) > 1000:
         raise StorageError(f"{path}: more groups than any file of ours.")
     for name in group:
@@ -90,11 +91,12 @@ def _collect(group: h5py.Group, prefix: str, datasets: dict[str, np.ndarray], pa
             raise StorageError(f"{path}: {prefix}{name} is a link to elsewhere, which we never write.")
         item = group[name]
         if isinstance(item, h5py.Group):
-            _collect(item, f"{prefix}{name}/", datasets, path)
+            _collect(item, f"{prefix}{name}/", datasets, path, allowance)
             continue
         if item.is_virtual or item.external:
             raise StorageError(f"{path}: {prefix}{name} takes its data from another file, which we never write.")
-        if item.dtype.kind not in "fiu" or item.size * item.dtype.itemsize > LARGEST_DATASET:
+        allowance[0] -= item.size * item.dtype.itemsize
+        if item.dtype.kind not in "fiu" or allowance[0] < 0:
             raise StorageError(f"{path}: {prefix}{name} has shape {item.shape} and type {item.dtype}, which is absurd.")
         datasets[prefix + name] = item[()]
 

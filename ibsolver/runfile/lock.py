@@ -78,6 +78,18 @@ class WriterLock:
         )
 
 
+def writer_alive(directory: Path | str) -> bool:
+    """Return whether a writer holds a run directory and may be alive."""
+    path = Path(directory) / LOCK
+    try:
+        age = time.time() - path.stat().st_mtime
+        return not _dead(json.loads(path.read_text()), age)
+    except FileNotFoundError:
+        return False
+    except (OSError, ValueError):
+        return True
+
+
 def _identity() -> dict[str, object]:
     return {"host": socket.gethostname(), "pid": os.getpid(), "begun": _begun(os.getpid())}
 

@@ -12,8 +12,9 @@ from typing import Any
 
 from ibsolver.runfile.atomic import finite, read_json, storage_error, write_json
 from ibsolver.runfile.layout import LOG, STATUS
+from ibsolver.runfile.lock import writer_alive
 
-STATES = ("running", "finished", "interrupted", "diverged", "storage full", "failed")
+STATES = ("running", "finished", "interrupted", "diverged", "storage full", "failed", "gone")
 
 
 def now_utc() -> str:
@@ -27,7 +28,7 @@ def write_status(directory: Path | str, state: str, numbers: Mapping[str, Any]) 
     Parameters
     ----------
     state : str
-        One of `STATES`.
+        One of `STATES` but "gone", which is what a reader finds.
     numbers : mapping
         step, time, travel, travel_end, seconds_left, checkpoint and whatever else helps.
     """
@@ -38,6 +39,15 @@ def write_status(directory: Path | str, state: str, numbers: Mapping[str, Any]) 
 def read_status(directory: Path | str) -> dict[str, Any]:
     """Return the status of a run (see `ibsolver.runfile.atomic.read_json` for errors)."""
     return read_json(Path(directory) / STATUS)
+
+
+def present_status(directory: Path | str) -> dict[str, Any]:
+    """Return the status of a run as it is now: "gone" if it says "running" but its process is no more on this host."""
+    status = read_status(directory)
+    if status.get("state") == "running" and not writer_alive(directory):
+        status["state"] = "gone"
+        status["message"] = "The process that wrote this run is no more; it left no word (power cut, kill?)."
+    return status
 
 
 class RunLog:

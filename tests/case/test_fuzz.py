@@ -18,7 +18,7 @@ from ibsolver.case.template import KINDS, OUTLINE_CSV, new_case
 from ibsolver.case.values import ValueFault
 from ibsolver.errors import CaseError
 
-QUICK = settings(max_examples=250, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
+QUICK = settings(max_examples=250, derandomize=True, deadline=5000, suppress_health_check=[HealthCheck.function_scoped_fixture])
 TEXTS = [new_case(kind) for kind in sorted(KINDS)]
 NAMES = sorted({key.name for section in SECTIONS for key in section.keys})
 UNITS = ["mm", "deg", "mm/s", "degC", "kg/m3", "kg/m2", "m2/s", "s", "N m/rad", "Hz", ""]

@@ -13,6 +13,8 @@ from ibsolver.runfile.checkpoint import read_latest, write_checkpoint
 from ibsolver.runfile.frame import read_frame, write_frame
 
 RNG = np.random.default_rng(0)
+STATE = {"u": RNG.standard_normal((5, 6)), "force": RNG.standard_normal((3, 2))}
+NUMBERS = {"state": {"time": 0.1 + 0.2, "step": 7}, "schedule": {"frames": 2}}
 
 
 def arrays(nx=30, ny=20, n=7):
@@ -57,11 +59,16 @@ def test_arrays_that_do_not_fit_together_are_refused(tmp_path):
         read_frame(path)
 
 
-@settings(max_examples=60, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
-@given(where=st.floats(0, 0.999), bit=st.integers(0, 7), cut=st.booleans())
-def test_truncated_or_flipped_frames_give_a_sentence_or_numbers(tmp_path, where, bit, cut):
-    """Never another exception: a flip inside compressed data may pass, anything else is a `StorageError`."""
-    path = make_frame(tmp_path / "f.h5")
+MUTATIONS = settings(
+    max_examples=150,
+    derandomize=True,
+    deadline=5000,
+    suppress_health_check=[HealthCheck.function_scoped_fixture],
+)
+
+
+def mutate(path, where, bit, cut):
+    """Cut a file short, or flip one bit of it."""
     data = bytearray(path.read_bytes())
     position = int(where * len(data))
     if cut:
@@ -69,10 +76,33 @@ def test_truncated_or_flipped_frames_give_a_sentence_or_numbers(tmp_path, where,
     else:
         data[position] ^= 1 << bit
     path.write_bytes(bytes(data))
+
+
+@MUTATIONS
+@given(where=st.floats(0, 0.999), bit=st.integers(0, 7), cut=st.booleans())
+def test_truncated_or_flipped_frames_give_a_sentence_or_numbers(tmp_path, where, bit, cut):
+    """Never another exception: a flip inside compressed data may pass, anything else is a `StorageError`."""
+    path = make_frame(tmp_path / "f.h5")
+    mutate(path, where, bit, cut)
     try:
         assert read_frame(path).u.shape == (20, 31)
     except StorageError as error:
         assert "f.h5" in str(error)
+
+
+@MUTATIONS
+@given(where=st.floats(0, 0.999), bit=st.integers(0, 7), cut=st.booleans())
+def test_truncated_or_flipped_checkpoints_are_never_taken_for_whole(tmp_path, where, bit, cut):
+    """Either the numbers are the right ones to the bit, or it is a sentence: a checkpoint carries its own checksum."""
+    write_checkpoint(tmp_path, 1, STATE, NUMBERS, "abc")
+    mutate(tmp_path / "checkpoint-b.h5", where, bit, cut)
+    try:
+        latest = read_latest(tmp_path)
+    except StorageError as error:
+        assert "checkpoint-b.h5" in str(error)
+    else:
+        for name, array in STATE.items():
+            assert (latest.arrays[name] == array).all()
 
 
 def test_links_and_virtual_datasets_are_refused(tmp_path):
@@ -108,10 +138,6 @@ def test_another_schema_is_a_sentence(tmp_path):
         file.attrs["schema"] = 99
     with pytest.raises(StorageError, match="schema 99; this version reads 1"):
         read_frame(path)
-
-
-STATE = {"u": RNG.standard_normal((5, 6)), "force": RNG.standard_normal((3, 2))}
-NUMBERS = {"state": {"time": 0.1 + 0.2, "step": 7}, "schedule": {"frames": 2}}
 
 
 def test_checkpoints_come_back_to_the_bit_and_alternate(tmp_path):
