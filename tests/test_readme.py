@@ -19,7 +19,7 @@ def test_ci_runs_the_test_command_of_the_readme():
 
 
 def test_every_command_stands_in_the_table_and_the_other_way_round():
-    assert {verb.name for verb in VERBS} == set(re.findall(r"^\| `(\w+) ", README, re.M))
+    assert {verb.name for verb in VERBS} == set(re.findall(r"^\| `(\w+)", README, re.M))
 
 
 def test_every_file_that_is_named_exists():

@@ -13,7 +13,7 @@ from ibsolver.case.model import Case
 from ibsolver.case.read import load_case
 from ibsolver.errors import CaseError, StorageError
 from ibsolver.runfile import layout
-from ibsolver.runfile.atomic import read_json, storage_error, write_bytes, write_json
+from ibsolver.runfile.atomic import storage_error, write_bytes, write_json
 from ibsolver.runfile.lock import WriterLock
 
 _OURS = (

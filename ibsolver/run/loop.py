@@ -17,9 +17,9 @@ from ibsolver.flow.advance import Problem, StepReport, advance
 from ibsolver.flow.state import FlowState
 from ibsolver.kernels import _jit
 from ibsolver.run.assemble import assemble, restored_state, start_state
+from ibsolver.run.directory import create_directory, decoded, edited_case, write_case
 from ibsolver.run.forecast import forecast
 from ibsolver.run.progress import Clock, Progress
-from ibsolver.run.directory import create_directory, decoded, edited_case, write_case
 from ibsolver.run.record import RESERVE_BYTES, Recorder
 from ibsolver.run.stopping import StopRequest
 from ibsolver.runfile import layout
