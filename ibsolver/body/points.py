@@ -1,22 +1,10 @@
-"""Lagrangian points along lines and closed curves, in the frame of their body.
-
-How the ends of a thin plate are treated decides its accuracy, because a regularised plate acts longer than its
-points. The numbers below come from a convergence study against a body-fitted computation (DEVELOPERS.md, "Edges").
-"""
+"""Lagrangian points along lines and closed curves, in the frame of their body."""
 
 from __future__ import annotations
 
 import numpy as np
 
 from ibsolver.errors import IbsolverError
-
-PLATE_SPACING = 1.3  # cells between points of a plate, about; at 1.0 the answer depends three times more on how the
-# plate lies between the cells
-EDGE_RETRACTION = 0.65  # cells by which the last point stays inside the edge of a plate
-HELD_LAYER = 1.57  # cells: thickness of the fluid that a regularised plate holds, and whose inertia its points feel
-CLOSED_SPACING = 1.2  # cells between points of a closed curve, about
-CLOSED_RETRACTION = 0.4  # cells by which the points of a closed curve lie inside it
-
 
 class BodyError(IbsolverError):
     """A body that cannot be put on the grid."""
@@ -106,6 +94,16 @@ def polygon_area(curve: np.ndarray) -> tuple[float, np.ndarray]:
     cross = curve[:, 0] * following[:, 1] - following[:, 0] * curve[:, 1]
     area = 0.5 * float(cross.sum())
     return area, ((curve + following) * cross[:, None]).sum(axis=0) / (6.0 * area)
+
+
+def polygon_polar_moment(curve: np.ndarray) -> float:
+    """Return the polar second moment of area about the centroid of a counter-clockwise polygon."""
+    area, centroid = polygon_area(curve)
+    here = curve - centroid
+    following = np.roll(here, -1, axis=0)
+    cross = here[:, 0] * following[:, 1] - following[:, 0] * here[:, 1]
+    squares = (here**2).sum(axis=1) + (here * following).sum(axis=1) + (following**2).sum(axis=1)
+    return float((cross * squares).sum() / 12.0)
 
 
 def distance_to_segment(points: np.ndarray, start: np.ndarray, end: np.ndarray) -> np.ndarray:

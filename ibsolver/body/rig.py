@@ -13,7 +13,6 @@ import numpy as np
 
 from ibsolver.body.points import distance_to_segment, smooth_step
 
-MERGE_FROM, MERGE_TO = 0.5, 1.5  # cells from another link: a flap point carries no force below, all of it above
 LEAST_WEIGHT = 1e-4
 
 
@@ -51,8 +50,8 @@ class Link:
         Position of the hinge along the parent's s (chords).
     side : int
         +1 opens to the parent's left (upper side of the plate), -1 to its right.
-    area, centroid
-        Of a closed body, in its own frame; 0 for a plate.
+    area, centroid, polar_moment
+        Of a closed body, in its own frame, the moment about the centroid; 0 for a plate.
     layer : float
         Thickness of the fluid that a regularised thin plate holds (chords); 0 for a closed body.
     """
@@ -67,6 +66,7 @@ class Link:
     length: float = 1.0
     area: float = 0.0
     centroid: tuple[float, float] = (0.0, 0.0)
+    polar_moment: float = 0.0
     layer: float = 0.0
 
 
@@ -97,6 +97,8 @@ class Rig:
 
     Attributes
     ----------
+    merge : tuple of float
+        `ibsolver.body.regularisation.Regularisation.merge`.
     link_of_point : ndarray of int, shape (n,)
     ds : ndarray, shape (n,)
         Length each Lagrangian point stands for.
@@ -105,6 +107,7 @@ class Rig:
     """
 
     links: tuple[Link, ...] = ()
+    merge: tuple[float, float] = (0.5, 1.5)
     link_of_point: np.ndarray = field(init=False)
     ds: np.ndarray = field(init=False)
     held: np.ndarray = field(init=False)
@@ -177,7 +180,7 @@ class Rig:
                     placement.angles[other]
                 )
                 distance = np.minimum(distance, distance_to_segment(points, start, end))
-            share = (distance / spacing - MERGE_FROM) / (MERGE_TO - MERGE_FROM)
+            share = (distance / spacing - self.merge[0]) / (self.merge[1] - self.merge[0])
             weight[mine] = np.maximum(smooth_step(share), LEAST_WEIGHT)
         return weight
 

@@ -108,7 +108,7 @@ class Tow:
 
     speed: float | None  # m/s, final
     reynolds: float  # final, on the reference length
-    start: str = "smooth"  # "impulsive" | "linear" | "smooth" | "hold acceleration"
+    start: str = "smooth"  # "impulsive" | "linear" | "smooth" | "hold acceleration" | "still"
     start_distance: float = 0.5  # chords
     profile_file: str | None = None
     profile: tuple[tuple[float, float], ...] = ()  # (t U/c, u/U) from the encoder

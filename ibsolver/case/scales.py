@@ -103,14 +103,15 @@ def acceleration_scale(case: Case) -> float | None:
 
 
 # The start of the tow, in convective times and chords. Ramp of length T = 2 s0 / U, x = t / T:
-# linear u = U x; smooth u = U (10 x^3 - 15 x^4 + 6 x^5); "hold acceleration": linear with T = 2 travel.
+# linear u = U x; smooth u = U (10 x^3 - 15 x^4 + 6 x^5); "hold acceleration": linear with T = 2 travel;
+# "still": the carriage stays, U is only the reference speed, and travel counts convective times.
 
 
 def ramp_time(case: Case) -> float:
     """Return how long the start lasts (convective times): 0 impulsive, and of an encoder's record all of it."""
     if case.tow.profile:
         return case.tow.profile[-1][0]
-    if case.tow.start == "impulsive":
+    if case.tow.start in ("impulsive", "still"):
         return 0.0
     if case.tow.start == "hold acceleration":
         return 2 * case.run.travel
@@ -119,6 +120,8 @@ def ramp_time(case: Case) -> float:
 
 def tow_speed(case: Case, time: float) -> float:
     """Return the speed of the carriage at a convective time, in U; past the end of a record its last value."""
+    if case.tow.start == "still" and not case.tow.profile:
+        return 0.0
     if time <= 0 and case.tow.start != "impulsive" and not case.tow.profile:
         return 0.0
     if case.tow.profile:

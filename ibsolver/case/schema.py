@@ -189,7 +189,7 @@ SECTIONS: tuple[Section, ...] = (
             Key("reynolds", "number", "Reynolds number speed * chord / viscosity at the final speed.", low=0.01,
                 high=20000, example="1200", synonyms=("re", "reynolds_number")),
             Key("start", "choice", "Shape of the start; the ramp lasts 2 start_distance / speed.", default="smooth",
-                choices=("impulsive", "linear", "smooth", "hold acceleration"), example='"smooth"'),
+                choices=("impulsive", "linear", "smooth", "hold acceleration", "still"), example='"smooth"'),
             Key("start_distance", "number", "Travel during a linear or smooth start, in chords.", default=0.5,
                 low=0.001, high=1e4, example="0.5"),
             Key("profile", "file", "CSV time_s, speed_m_s of the carriage's encoder, instead of start.",

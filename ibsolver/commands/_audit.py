@@ -46,8 +46,8 @@ def greatest_acceleration(case: Case) -> float:
     if tow.profile:
         pairs = zip(tow.profile[:-1], tow.profile[1:], strict=True)
         return max(abs(u1 - u0) / (t1 - t0) for (t0, u0), (t1, u1) in pairs)
-    if tow.start == "impulsive":
-        return math.inf
+    if tow.start in ("impulsive", "still"):
+        return math.inf if tow.start == "impulsive" else 0.0
     return GREATEST_OVER_MEAN[tow.start] / scales.ramp_time(case)
 
 

@@ -11,7 +11,9 @@ from ibsolver.body.rig import Configuration, Placement, Rig
 from ibsolver.flow.balance import ControlVolume
 from ibsolver.flow.boundary import BoundaryConditions
 from ibsolver.flow.coupling import Coupling
-from ibsolver.flow.loads import Loads, displaced, loads_of
+from ibsolver.flow.hinge import Mechanics
+from ibsolver.flow.loads import Acceleration, Loads, inertia_of_held_fluid, loads_of
+from ibsolver.flow.moving import FlapReport, Movement, begin_step, end_step, start_motion
 from ibsolver.flow.poisson import PoissonSolver
 from ibsolver.flow.state import FlowState
 from ibsolver.flow.timestep import RUNAWAY, StepRule
@@ -35,9 +37,17 @@ class Problem:
     time_end : float
         Time at which the travel of the run is covered.
     configuration : callable
-        Configuration of the rig at a time (prescribed motions).
-    moving : bool
-        Whether any point moves on the grid.
+        Configuration of the rig at a time; openings of free flaps are their start values.
+    moving_points : ndarray of int or None
+        Lagrangian points that move on the grid; None where all of them do. Empty where nothing moves.
+    mechanics : tuple of Mechanics
+        Of all flaps.
+    mass_rig : Rig
+        The rig with mass points in place of Lagrangian ones.
+    masses, buoyant_masses : ndarray, shape (nm,)
+        Of the mass points (rho c^2).
+    gravity : ndarray, shape (2,)
+        Gravity in the plane of the flow (U^2/c).
     """
 
     grid: StaggeredGrid
@@ -51,13 +61,23 @@ class Problem:
     tow_distance: Callable[[float], float]
     time_end: float
     configuration: Callable[[float], Configuration]
-    moving: bool
     slip_tolerance: float
     repeats: int
     placement: Placement
+    moving_points: np.ndarray | None
+    mechanics: tuple[Mechanics, ...]
+    mass_rig: Rig
+    masses: np.ndarray
+    buoyant_masses: np.ndarray
+    gravity: np.ndarray
     volume: ControlVolume | None = None
     implicit: ImplicitDiffusion | None = None
     scratch: dict[str, np.ndarray] = field(default_factory=dict)
+
+    @property
+    def moving(self) -> bool:
+        """Whether any point moves on the grid."""
+        return self.moving_points is None or self.moving_points.size > 0
 
     @property
     def shapes(self) -> dict[str, np.ndarray]:
@@ -87,13 +107,16 @@ class StepReport:
     loads: Loads
     momentum_drag: float
     momentum_lift: float
+    felt: Acceleration = Acceleration(0.0)
+    flaps: tuple[FlapReport, ...] = ()
     trouble: str = ""
 
 
 def prepare(state: FlowState, problem: Problem) -> None:
     """Fill the ghosts and the stock-taking of a start field, so that `advance` may begin."""
     problem.sides.fill(state.u, state.v, problem.tow_speed(state.time))
-    state.rate = take_stock(state, problem)[0]
+    start_motion(state, problem)
+    state.rate = max(take_stock(state, problem)[0], _point_rate(state, problem))
     if problem.volume is not None:
         state.momentum[...] = problem.volume.snapshot(state.u, state.v)
 
@@ -111,18 +134,22 @@ def advance(state: FlowState, problem: Problem, dt: float) -> StepReport:
     """
     speeds = (problem.tow_speed(state.time), problem.tow_speed(state.time + dt))
     acceleration = (speeds[1] - speeds[0]) / dt
-    if problem.moving:
-        _move_bodies(problem, state.time + dt)
+    movement = begin_step(state, problem, dt) if problem.moving else None
     u_star, v_star = _predict(state, problem, dt, speeds)
-    slip, repeats = _force_and_project(state, problem, dt, u_star, v_star)
+    slip, repeats = _force_and_project(state, problem, dt, (u_star, v_star), movement)
     _exchange(state, problem, u_star, v_star)
     problem.sides.fill(state.u, state.v, speeds[1])
     rate, divergence, total = take_stock(state, problem)
-    momentum_force = _balance(state, problem, dt, acceleration)
+    felt = _accelerations(state, movement, dt, acceleration)
+    momentum_force = _balance(state, problem, dt, felt)
+    loads = loads_of(problem.rig, problem.placement, state.force, felt)
+    flaps: tuple[FlapReport, ...] = ()
+    if movement is not None:
+        flaps = end_step(state, problem, movement, loads.hinge_moments, dt, acceleration)
+        rate = max(rate, _point_rate(state, problem))
     state.time += dt
     state.travel = problem.tow_distance(state.time)
     state.dt, state.step, state.rate = dt, state.step + 1, rate
-    loads = loads_of(problem.rig, problem.placement, state.force, acceleration)
     return StepReport(
         dt=dt,
         courant=rate * dt,
@@ -132,8 +159,24 @@ def advance(state: FlowState, problem: Problem, dt: float) -> StepReport:
         loads=loads,
         momentum_drag=-float(momentum_force[0]),
         momentum_lift=-float(momentum_force[1]),
+        felt=felt,
+        flaps=flaps,
         trouble=_trouble(rate * dt, total, loads),
     )
+
+
+def _accelerations(state: FlowState, movement: Movement | None, dt: float, frame: float) -> Acceleration:
+    """Return the mean accelerations of the step."""
+    if movement is None:
+        return Acceleration(frame)
+    points = (movement.velocity - state.point_velocity) / dt
+    return Acceleration(frame, points, (movement.base_motion - state.base_motion) / dt)
+
+
+def _point_rate(state: FlowState, problem: Problem) -> float:
+    """Return the rate at which the fastest point crosses cells: the next step must not outrun a body."""
+    speed = np.abs(state.point_velocity).sum(axis=1)
+    return float(speed.max(initial=0.0)) / problem.grid.spacing
 
 
 def _predict(
@@ -164,43 +207,47 @@ def _predict(
         v_star,
     )
     sides.set_normal(state.u, u_star, v_star, speeds, dt)
-    problem.coupling.spread(state.force, dt, u_star, v_star)
+    stencils = problem.coupling.earlier if problem.moving else problem.coupling.stencils
+    problem.coupling.spread(state.force, dt, u_star, v_star, stencils)
     if problem.implicit is not None:
         problem.implicit.apply(state.u, state.v, u_star, v_star, speeds, dt)
     return u_star, v_star
 
 
-def _move_bodies(problem: Problem, time: float) -> None:
-    """Put points, stencils and coupling matrix where the bodies are at `time`."""
-    problem.placement = problem.rig.place(problem.configuration(time))
-    problem.coupling.locate(problem.placement.points)
-    problem.coupling.build_from_lattice()
-    problem.coupling.factorise(problem.rig.weights(problem.placement, problem.grid.spacing))
-
-
 def _force_and_project(
-    state: FlowState, problem: Problem, dt: float, u_star: np.ndarray, v_star: np.ndarray
+    state: FlowState,
+    problem: Problem,
+    dt: float,
+    predicted: tuple[np.ndarray, np.ndarray],
+    movement: Movement | None,
 ) -> tuple[float, int]:
     """Force the bodies' velocity, project, and repeat until they slip less than the tolerance.
 
     Returns the slip that is left and the number of Poisson solves.
     """
-    coupling, wanted = problem.coupling, problem.placement.velocities
+    coupling, (u_star, v_star) = problem.coupling, predicted
     if coupling.count == 0:
         _project(state, problem, dt, u_star, v_star)
         return 0.0, 1
-    present = np.empty_like(wanted)
+    present = np.empty_like(state.force)
     coupling.interpolate(u_star, v_star, present)
     most = problem.repeats if state.step > 0 else max(problem.repeats, FIRST_STEP_REPEATS)
     repeats = 0
     while True:
-        change = coupling.force_change(wanted - present, dt, state.force)
+        if movement is None:
+            change = coupling.force_change(-present, dt, state.force)
+        elif repeats == 0:
+            coupling.spread(state.force, -dt, u_star, v_star, coupling.earlier)
+            change = movement.whole_force(problem, present, state, dt)
+            state.force[...] = 0.0
+        else:
+            change = movement.corrected_force(problem, present, state, dt) - state.force
         coupling.spread(change, dt, u_star, v_star)
         state.force += change
         _project(state, problem, dt, u_star, v_star)
         repeats += 1
         coupling.interpolate(u_star, v_star, present)
-        slip = coupling.worst_slip(wanted - present)
+        slip = coupling.worst_slip(-present if movement is None else movement.velocity - present)
         if not slip > problem.slip_tolerance or repeats >= most:
             return slip, repeats
 
@@ -236,15 +283,14 @@ def take_stock(state: FlowState, problem: Problem) -> tuple[float, float, float]
     return float(rows[:, 0].max()), float(rows[:, 1].max()), float(rows[:, 2].sum())
 
 
-def _balance(state: FlowState, problem: Problem, dt: float, acceleration: float) -> np.ndarray:
-    """Return the force on the fluid by the momentum balance, less the fluid that the bodies hold."""
+def _balance(state: FlowState, problem: Problem, dt: float, felt: Acceleration) -> np.ndarray:
+    """Return the force on the fluid outside the bodies by the momentum balance, shape (2,)."""
     if problem.volume is None:
         return np.zeros(2)
     after = problem.volume.snapshot(state.u, state.v)
-    force = problem.volume.force_on_fluid(state.momentum, after, state.p, dt, acceleration)
+    force = problem.volume.force_on_fluid(state.momentum, after, state.p, dt, felt.frame)
     state.momentum[...] = after
-    force[0] += displaced(problem.rig) * acceleration
-    return force
+    return force - inertia_of_held_fluid(problem.rig, felt)
 
 
 def _trouble(courant: float, total: float, loads: Loads) -> str:

@@ -6,6 +6,10 @@ so that the projection that follows does not undo them. B is symmetric positive 
 * Bodies at rest on the grid: B is built exactly, by solving the grid's own Poisson equation for every unit force.
 * Moving bodies: the rows of the moving points come from the free-space lattice Green's function.
 
+Forces of the last step are carried where they balance the last pressure: at the points' earlier places. The new forces then
+replace them, (E P E^T) q_new = h^2 (U_b - E u*)/dt + E P E_old^T q_old. Carried along with the points instead, they and the
+pressure gradient leave a dipole whose irrotational part passes for slip.
+
 A flap point near its plate carries only a share w of the force that exact no-slip would ask of it: its diagonal
 gains the compliance B_ii (1 - w)/w acting on its whole force, which fades the point out smoothly.
 """
@@ -25,6 +29,7 @@ from ibsolver.grid.staggered import StaggeredGrid
 from ibsolver.kernels import coupling as coupling_kernel
 from ibsolver.kernels import delta, momentum
 
+KERNELS = {"roma": delta.ROMA, "quintic": delta.QUINTIC}
 SHIFT = 1e-9  # of the mean diagonal: makes the null force of a closed curve (constant normal force) definite
 
 
@@ -38,13 +43,13 @@ class Stencils:
     weight_v: np.ndarray
 
     @classmethod
-    def empty(cls, count: int) -> Stencils:
-        """Return stencils of `count` points, not yet located."""
+    def empty(cls, count: int, width: int) -> Stencils:
+        """Return stencils of `count` points, `width` grid values wide, not yet located."""
         return cls(
             np.zeros((count, 2), dtype=np.int64),
-            np.zeros((count, 2, delta.WIDTH)),
+            np.zeros((count, 2, width)),
             np.zeros((count, 2), dtype=np.int64),
-            np.zeros((count, 2, delta.WIDTH)),
+            np.zeros((count, 2, width)),
         )
 
 
@@ -58,8 +63,8 @@ class Coupling:
     poisson : PoissonSolver
     count : int
         Number of points.
-    kernel : int
-        Regularised delta function (`ibsolver.kernels.delta`).
+    kernel : {"roma", "quintic"}
+        Regularised delta function (`ibsolver.body.regularisation`).
     """
 
     def __init__(
@@ -68,11 +73,12 @@ class Coupling:
         sides: BoundaryConditions,
         poisson: PoissonSolver,
         count: int,
-        kernel: int = delta.ROMA,
+        kernel: str = "roma",
     ):
         self.grid, self._sides, self._poisson = grid, sides, poisson
-        self.kernel = kernel
-        self.stencils = Stencils.empty(count)
+        self.kernel = KERNELS[kernel]
+        self.stencils = Stencils.empty(count, delta.WIDTHS[self.kernel])
+        self.earlier = Stencils.empty(count, delta.WIDTHS[self.kernel])
         self.matrix = np.zeros((2 * count, 2 * count))
         self.weights = np.ones(count)
         self._compliance = np.zeros(2 * count)
@@ -104,7 +110,7 @@ class Coupling:
 
     def _require_inside_core(self, points: np.ndarray) -> None:
         x_low, x_high, y_low, y_high = self.grid.core
-        margin = 2.0 * self.grid.spacing
+        margin = (0.5 * delta.WIDTHS[self.kernel] + 0.5) * self.grid.spacing
         outside = (
             (points[:, 0] < x_low + margin)
             | (points[:, 0] > x_high - margin)
@@ -118,15 +124,56 @@ class Coupling:
                 f"grid ({x_low:.3f} to {x_high:.3f}, {y_low:.3f} to {y_high:.3f}). Raise grid.core_margin."
             )
 
+    def move(self, before: np.ndarray, after: np.ndarray) -> None:
+        """Put the stencils where the points are after a step, and keep those of before as `earlier`.
+
+        Raises
+        ------
+        BodyError
+            As `locate`.
+        """
+        self.stencils, self.earlier = self.earlier, self.stencils
+        self.locate(before)
+        self.stencils, self.earlier = self.earlier, self.stencils
+        self.locate(after)
+
+    def velocity_from_earlier(self, force: np.ndarray, moving: np.ndarray | None) -> np.ndarray:
+        """Return the projected velocity, per time, at the points now that forces at their earlier places give.
+
+        Parameters
+        ----------
+        force : ndarray, shape (n, 2)
+            Point forces.
+        moving : ndarray of int or None
+            Points that have moved; None means all.
+        """
+        here, there = self.stencils, self.earlier
+        columns = np.arange(self.count) if moving is None else moving
+        resting = force.copy()
+        resting[columns] = 0.0
+        velocity = (self.matrix @ resting.ravel()).reshape(force.shape)
+        moved = np.zeros_like(force)
+        coupling_kernel.lattice_product(
+            columns,
+            *(here.index_u, here.weight_u, here.index_v, here.weight_v),
+            *(there.index_u, there.weight_u, there.index_v, there.weight_v),
+            projected_response(self._reach()),
+            force,
+            moved,
+        )
+        return velocity + self._scale * moved
+
     def interpolate(self, u: np.ndarray, v: np.ndarray, out: np.ndarray) -> None:
         """Write the velocity at the points into `out`, shape (n, 2)."""
         s = self.stencils
         delta.interpolate(u, s.index_u, s.weight_u, 0, out)
         delta.interpolate(v, s.index_v, s.weight_v, 1, out)
 
-    def spread(self, force: np.ndarray, factor: float, u: np.ndarray, v: np.ndarray) -> None:
+    def spread(
+        self, force: np.ndarray, factor: float, u: np.ndarray, v: np.ndarray, stencils: Stencils | None = None
+    ) -> None:
         """Add ``factor`` times the acceleration by point forces, shape (n, 2), to `u` and `v` in place."""
-        s = self.stencils
+        s = stencils or self.stencils
         delta.spread(force, 0, factor * self._scale, s.index_u, s.weight_u, u)
         delta.spread(force, 1, factor * self._scale, s.index_v, s.weight_v, v)
 
@@ -195,6 +242,26 @@ class Coupling:
         """
         right = slip.ravel() / dt - self._compliance * force.ravel()
         return cho_solve(self._factor, right, check_finite=False).reshape(slip.shape)
+
+    def whole_force(self, slip: np.ndarray, dt: float, velocity: np.ndarray) -> np.ndarray:
+        """Return the point forces that remove the slip and replace forces at earlier places.
+
+        Parameters
+        ----------
+        slip : ndarray, shape (n, 2)
+            Wanted minus present velocity at the points, the present one with the earlier forces in it.
+        dt : float
+            Time step.
+        velocity : ndarray, shape (n, 2)
+            What those earlier forces give, per time (`velocity_from_earlier`).
+        """
+        right = (slip / dt + velocity).ravel()
+        return cho_solve(self._factor, right, check_finite=False).reshape(slip.shape)
+
+    def response(self, velocities: np.ndarray) -> np.ndarray:
+        """Return point forces times time that give the points these velocities, shape (m, n, 2) to (m, n, 2)."""
+        columns = velocities.reshape(velocities.shape[0], -1).T
+        return np.ascontiguousarray(cho_solve(self._factor, columns, check_finite=False).T).reshape(velocities.shape)
 
     def worst_slip(self, slip: np.ndarray) -> float:
         """Return the largest slip speed on points that carry their whole force."""

@@ -36,7 +36,26 @@ class Loads:
     hinge_moments: tuple[float, ...] = ()
 
 
-def loads_of(rig: Rig, placement: Placement, force: np.ndarray, acceleration: float) -> Loads:
+@dataclass(frozen=True, eq=False)
+class Acceleration:
+    """Mean accelerations over a step.
+
+    Parameters
+    ----------
+    frame : float
+        Of the carriage's frame along x: what the fluid feels as a push.
+    points : ndarray, shape (n, 2), or None
+        Of the Lagrangian points on the grid; None where they rest.
+    base : ndarray, shape (3,), or None
+        Of the base body's centroid, and its counter-clockwise angular acceleration.
+    """
+
+    frame: float
+    points: np.ndarray | None = None
+    base: np.ndarray | None = None
+
+
+def loads_of(rig: Rig, placement: Placement, force: np.ndarray, acceleration: Acceleration) -> Loads:
     """Return the loads.
 
     Parameters
@@ -45,17 +64,15 @@ def loads_of(rig: Rig, placement: Placement, force: np.ndarray, acceleration: fl
         The bodies and where they are.
     force : ndarray, shape (n, 2)
         Point forces on the fluid.
-    acceleration : float
-        Mean acceleration of the frame along x over the step.
+    acceleration : Acceleration
     """
     if not rig.links:
         return Loads(0.0, 0.0, 0.0)
-    base = rig.links[0]
     on_body = hydrodynamic(rig, force, acceleration)
-    drag, lift = on_body.sum(axis=0)
-    drag -= base.area * acceleration
+    inside = inside_force(rig, acceleration)
+    drag, lift = on_body.sum(axis=0) + inside
     turning = torque(placement.points, on_body, placement.origins[0])
-    turning += base.area * acceleration * base.centroid[1]
+    turning += _inside_torque(rig, placement, inside, acceleration)
     hinge_moments = []
     for k, link in enumerate(rig.links[1:], start=1):
         mine = np.isin(rig.link_of_point, descendants(rig, k))
@@ -64,7 +81,7 @@ def loads_of(rig: Rig, placement: Placement, force: np.ndarray, acceleration: fl
     return Loads(float(drag), float(lift), -float(turning), tuple(map(float, hinge_moments)))
 
 
-def hydrodynamic(rig: Rig, force: np.ndarray, acceleration: float) -> np.ndarray:
+def hydrodynamic(rig: Rig, force: np.ndarray, acceleration: Acceleration) -> np.ndarray:
     """Return the force of the fluid on the body at each point, less the inertia of the layer a plate holds.
 
     The inside of a closed body is not included here (it has no place on the points).
@@ -74,13 +91,37 @@ def hydrodynamic(rig: Rig, force: np.ndarray, acceleration: float) -> np.ndarray
     ndarray, shape (n, 2)
     """
     on_body = -force
-    on_body[:, 0] -= rig.held * acceleration
+    on_body[:, 0] -= rig.held * acceleration.frame
+    if acceleration.points is not None:
+        on_body += rig.held[:, None] * acceleration.points
     return on_body
 
 
-def displaced(rig: Rig) -> float:
-    """Return the area of fluid whose inertia the point forces include: closed bodies and held layers."""
-    return float(rig.links[0].area + rig.held.sum()) if rig.links else 0.0
+def inside_force(rig: Rig, acceleration: Acceleration) -> np.ndarray:
+    """Return the force (x, y) that the inertia of the fluid inside a closed body adds to the point forces' reaction."""
+    pull = np.array([-acceleration.frame, 0.0])
+    if acceleration.base is not None:
+        pull = pull + acceleration.base[:2]
+    return rig.links[0].area * pull
+
+
+def _inside_torque(rig: Rig, placement: Placement, inside: np.ndarray, acceleration: Acceleration) -> float:
+    """Return the counter-clockwise torque of that inertia about the base's origin."""
+    base = rig.links[0]
+    if not base.area:
+        return 0.0
+    c, s = np.cos(placement.angles[0]), np.sin(placement.angles[0])
+    x, y = base.centroid[0] * c - base.centroid[1] * s, base.centroid[0] * s + base.centroid[1] * c
+    spin = base.polar_moment * acceleration.base[2] if acceleration.base is not None else 0.0
+    return float(x * inside[1] - y * inside[0] + spin)
+
+
+def inertia_of_held_fluid(rig: Rig, acceleration: Acceleration) -> np.ndarray:
+    """Return what has to be added to the reaction of the point forces for the load on the body, shape (2,)."""
+    if not rig.links:
+        return np.zeros(2)
+    layer = hydrodynamic(rig, np.zeros((rig.size, 2)), acceleration).sum(axis=0)
+    return layer + inside_force(rig, acceleration)
 
 
 def torque(points: np.ndarray, force: np.ndarray, about: np.ndarray) -> float:

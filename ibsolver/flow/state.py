@@ -21,8 +21,18 @@ class FlowState:
         Explicit tendency of the step before, for Adams-Bashforth.
     force : ndarray, shape (n, 2)
         Force of each Lagrangian point on the fluid over the last step (rho U^2 c).
-    momentum : ndarray, shape (3, 2)
-        Of the control volume at `time`: momentum, flux, and angular terms are kept for the balance of the next step.
+    momentum : ndarray, shape (2, 2)
+        Momentum in the control volume at `time` and its flux out of it, for the balance of the next step.
+    openings, opening_rates, earlier_rates : ndarray, shape (flaps,)
+        Of all flaps at `time`, and the rates one step before (rad, rad per c/U).
+    held : ndarray, shape (flaps,)
+        Whether a stop holds a free flap (`ibsolver.flow.hinge`).
+    points : ndarray, shape (n, 2)
+        Where the Lagrangian points were put in the last step.
+    point_velocity, mass_velocity : ndarray, shape (n, 2), (nm, 2)
+        Velocity of Lagrangian and mass points at `time`.
+    base_motion : ndarray, shape (3,)
+        Velocity of the base body's centroid and its counter-clockwise rate at `time`.
     time, dt, travel : float
         Time, length of the last step (0 before the first), distance towed (chords).
     step : int
@@ -37,6 +47,14 @@ class FlowState:
     tendency_v: np.ndarray
     force: np.ndarray
     momentum: np.ndarray
+    openings: np.ndarray
+    opening_rates: np.ndarray
+    earlier_rates: np.ndarray
+    held: np.ndarray
+    points: np.ndarray
+    point_velocity: np.ndarray
+    mass_velocity: np.ndarray
+    base_motion: np.ndarray
     time: float = 0.0
     dt: float = 0.0
     travel: float = 0.0
@@ -52,8 +70,8 @@ class FlowState:
         return {f.name: value for f in fields(self) if not isinstance(value := getattr(self, f.name), np.ndarray)}
 
 
-def empty_state(grid: StaggeredGrid, points: int) -> FlowState:
-    """Return fluid at rest with room for the forces of `points` points."""
+def empty_state(grid: StaggeredGrid, points: int, flaps: int = 0, mass_points: int = 0) -> FlowState:
+    """Return fluid at rest with room for so many Lagrangian points, flaps and mass points."""
     nx, ny = grid.nx, grid.ny
     u_shape, v_shape = (ny + 2, nx + 3), (ny + 3, nx + 2)
     return FlowState(
@@ -64,4 +82,12 @@ def empty_state(grid: StaggeredGrid, points: int) -> FlowState:
         tendency_v=np.zeros(v_shape),
         force=np.zeros((points, 2)),
         momentum=np.zeros((2, 2)),
+        openings=np.zeros(flaps),
+        opening_rates=np.zeros(flaps),
+        earlier_rates=np.zeros(flaps),
+        held=np.zeros(flaps),
+        points=np.zeros((points, 2)),
+        point_velocity=np.zeros((points, 2)),
+        mass_velocity=np.zeros((mass_points, 2)),
+        base_motion=np.zeros(3),
     )

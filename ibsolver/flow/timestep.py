@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 DIFFUSION_LIMIT = 0.1  # of h^2 Re; Adams-Bashforth diffusion in 2-D is stable to 1/8, less beside convection
@@ -25,6 +26,8 @@ class StepRule:
         Whether diffusion is part of the Adams-Bashforth tendency.
     fixed : float or None
         A fixed step, for verification.
+    cap : float
+        Longest step for other reasons, such as a spring's period.
     """
 
     courant: float
@@ -32,12 +35,13 @@ class StepRule:
     reynolds: float
     explicit: bool
     fixed: float | None = None
+    cap: float = math.inf
 
     def longest(self) -> float:
         """Return the longest step that this rule ever takes."""
         if self.fixed is not None:
             return self.fixed
-        limit = self.courant * self.spacing
+        limit = min(self.courant * self.spacing, self.cap)
         if self.explicit:
             limit = min(limit, DIFFUSION_LIMIT * self.spacing**2 * self.reynolds)
         return limit

@@ -8,7 +8,62 @@ from __future__ import annotations
 
 import numpy as np
 
-from ibsolver.kernels._jit import parallel_kernel, prange
+from ibsolver.kernels._jit import inline, parallel_kernel, prange
+
+
+@inline
+def _entry(index_i, weight_i, index_j, weight_j, table, cy, cx):
+    """Return the projected response of one velocity component at a point to one force component at another."""
+    cy[:] = 0.0
+    cx[:] = 0.0
+    width = weight_i.shape[1]
+    for s in range(width):
+        for t in range(width):
+            cy[width - 1 + s - t] += weight_i[0, s] * weight_j[0, t]
+            cx[width - 1 + s - t] += weight_i[1, s] * weight_j[1, t]
+    dy = table.shape[0] // 2 + index_i[0] - index_j[0] - width + 1
+    dx = table.shape[1] // 2 + index_i[1] - index_j[1] - width + 1
+    total = 0.0
+    for s in range(2 * width - 1):
+        line = 0.0
+        for t in range(2 * width - 1):
+            line += cx[t] * table[dy + s, dx + t]
+        total += cy[s] * line
+    return total
+
+
+@parallel_kernel
+def lattice_product(columns, index_u, weight_u, index_v, weight_v, old_u, old_w_u, old_v, old_w_v, tables, force, out):
+    """Add to `out` the velocities at points due to forces at the old places of some points, but for 1 / h^2.
+
+    Parameters
+    ----------
+    columns : ndarray of int, shape (m,)
+        Points whose forces act.
+    index_u, weight_u, index_v, weight_v : ndarray
+        Stencils of all points now, as in `lattice_rows`.
+    old_u, old_w_u, old_v, old_w_v : ndarray
+        Stencils of all points before.
+    tables : ndarray, shape (4, ry, rx)
+        As in `lattice_rows`.
+    force : ndarray, shape (n, 2)
+        Point forces.
+    out : ndarray, shape (n, 2)
+        Modified in place.
+    """
+    for i in prange(out.shape[0]):
+        cy = np.zeros(2 * weight_u.shape[2] - 1)
+        cx = np.zeros(2 * weight_u.shape[2] - 1)
+        u, v = 0.0, 0.0
+        for c in range(columns.shape[0]):
+            j = columns[c]
+            fx, fy = force[j, 0], force[j, 1]
+            u += fx * _entry(index_u[i], weight_u[i], old_u[j], old_w_u[j], tables[0], cy, cx)
+            u += fy * _entry(index_u[i], weight_u[i], old_v[j], old_w_v[j], tables[2], cy, cx)
+            v += fx * _entry(index_v[i], weight_v[i], old_u[j], old_w_u[j], tables[3], cy, cx)
+            v += fy * _entry(index_v[i], weight_v[i], old_v[j], old_w_v[j], tables[1], cy, cx)
+        out[i, 0] += u
+        out[i, 1] += v
 
 
 @parallel_kernel
@@ -21,7 +76,7 @@ def lattice_rows(rows, index_u, weight_u, index_v, weight_v, scale, tables, out)
         Points whose rows are filled.
     index_u, index_v : ndarray of int, shape (n, 2)
         Padded (row, column) of each point's stencil on the u and v grids.
-    weight_u, weight_v : ndarray, shape (n, 2, 4)
+    weight_u, weight_v : ndarray, shape (n, 2, width)
         Weights along y and x.
     scale : float
         1 / h^2: the unknowns are point forces.
@@ -32,31 +87,16 @@ def lattice_rows(rows, index_u, weight_u, index_v, weight_v, scale, tables, out)
         Modified in place.
     """
     n = index_u.shape[0]
-    mid_y, mid_x = tables.shape[1] // 2, tables.shape[2] // 2
     for r in prange(rows.shape[0]):
         i = rows[r]
-        cy = np.zeros(7)
-        cx = np.zeros(7)
+        cy = np.zeros(2 * weight_u.shape[2] - 1)
+        cx = np.zeros(2 * weight_u.shape[2] - 1)
         for j in range(n):
-            for a in range(2):
-                for b in range(2):
-                    wi = weight_u[i] if a == 0 else weight_v[i]
-                    wj = weight_u[j] if b == 0 else weight_v[j]
-                    ii = index_u[i] if a == 0 else index_v[i]
-                    jj = index_u[j] if b == 0 else index_v[j]
-                    cy[:] = 0.0
-                    cx[:] = 0.0
-                    for s in range(4):
-                        for t in range(4):
-                            cy[3 + s - t] += wi[0, s] * wj[0, t]
-                            cx[3 + s - t] += wi[1, s] * wj[1, t]
-                    which = a if a == b else 2 + a
-                    dy = mid_y + ii[0] - jj[0] - 3
-                    dx = mid_x + ii[1] - jj[1] - 3
-                    total = 0.0
-                    for s in range(7):
-                        line = 0.0
-                        for t in range(7):
-                            line += cx[t] * tables[which, dy + s, dx + t]
-                        total += cy[s] * line
-                    out[2 * i + a, 2 * j + b] = total * scale
+            uu = _entry(index_u[i], weight_u[i], index_u[j], weight_u[j], tables[0], cy, cx)
+            uv = _entry(index_u[i], weight_u[i], index_v[j], weight_v[j], tables[2], cy, cx)
+            vu = _entry(index_v[i], weight_v[i], index_u[j], weight_u[j], tables[3], cy, cx)
+            vv = _entry(index_v[i], weight_v[i], index_v[j], weight_v[j], tables[1], cy, cx)
+            out[2 * i, 2 * j] = uu * scale
+            out[2 * i, 2 * j + 1] = uv * scale
+            out[2 * i + 1, 2 * j] = vu * scale
+            out[2 * i + 1, 2 * j + 1] = vv * scale

@@ -11,12 +11,11 @@ import math
 
 from ibsolver.kernels._jit import kernel
 
-WIDTH = 4  # grid values reserved for a kernel in each direction; narrower kernels leave the last weight at zero
-
 ROMA = 0  # Roma, Peskin & Berger 1999, J. Comput. Phys. 153, 509, eq. 22: three points
 HAT = 1  # bilinear: two points
-QUADRATIC = 2  # quadratic B-spline (Schoenberg 1946): three points, continuous slope
-CUBIC = 3  # cubic B-spline: four points, continuous curvature
+QUADRATIC, CUBIC, QUINTIC = 2, 3, 5  # B-splines (Schoenberg 1946): three, four and six points
+
+WIDTHS = {ROMA: 3, HAT: 3, QUADRATIC: 3, CUBIC: 4, QUINTIC: 6}  # grid values a kernel touches in each direction
 
 
 @kernel
@@ -26,23 +25,18 @@ def weights(kind, position, out):
     Parameters
     ----------
     kind : int
-        `ROMA`, `HAT`, `QUADRATIC` or `CUBIC`.
+        One of the constants above.
     position : float
         Position in cells, 0 at grid value 0.
-    out : ndarray, shape (4,)
+    out : ndarray, shape (WIDTHS[kind],)
         Modified in place.
     """
-    if kind == CUBIC:
+    if kind == CUBIC or kind == QUINTIC:
         cell = math.floor(position)
-        r = position - cell
-        out[0] = (1.0 - r) ** 3 / 6.0
-        out[1] = (4.0 - 6.0 * r * r + 3.0 * r**3) / 6.0
-        out[2] = (1.0 + 3.0 * r + 3.0 * r * r - 3.0 * r**3) / 6.0
-        out[3] = r**3 / 6.0
-        return int(cell) - 1
+        _spline(kind, position - cell, out)
+        return int(cell) - (1 if kind == CUBIC else 2)
     middle = math.floor(position + 0.5)
     r = position - middle
-    out[3] = 0.0
     if kind == ROMA:
         near = math.sqrt(1.0 - 3.0 * r * r)
         out[0] = (2.0 - near - 3.0 * r) / 6.0
@@ -57,6 +51,19 @@ def weights(kind, position, out):
         out[1] = 1.0 - abs(r)
         out[2] = max(0.0, r)
     return int(middle) - 1
+
+
+@kernel
+def _spline(degree, r, out):
+    """Fill the degree + 1 values of the B-spline at offset r (0 .. 1) by the recursion of Cox and de Boor."""
+    out[:] = 0.0
+    out[0] = 1.0
+    for k in range(1, degree + 1):
+        previous = 0.0
+        for i in range(k + 1):
+            here = out[i] if i < k else 0.0
+            out[i] = ((r + k - i) * previous + (1.0 - r + i) * here) / k
+            previous = here
 
 
 @kernel
@@ -75,7 +82,7 @@ def locate(kind, points, x0, y0, spacing, index, weight):
         Core cell width.
     index : ndarray of int, shape (n, 2)
         Padded (row, column) of the lowest value. Modified in place.
-    weight : ndarray, shape (n, 2, 4)
+    weight : ndarray, shape (n, 2, width)
         Weights along y and along x. Modified in place.
     """
     for k in range(points.shape[0]):
@@ -90,9 +97,9 @@ def interpolate(field, index, weight, column, out):
     for k in range(index.shape[0]):
         j0, i0 = index[k, 0], index[k, 1]
         total = 0.0
-        for a in range(WIDTH):
+        for a in range(weight.shape[2]):
             row = 0.0
-            for b in range(WIDTH):
+            for b in range(weight.shape[2]):
                 row += weight[k, 1, b] * field[j0 + a, i0 + b]
             total += weight[k, 0, a] * row
         out[k, column] = total
@@ -104,7 +111,7 @@ def spread(force, column, scale, index, weight, field):
     for k in range(index.shape[0]):
         j0, i0 = index[k, 0], index[k, 1]
         amount = scale * force[k, column]
-        for a in range(WIDTH):
+        for a in range(weight.shape[2]):
             share = amount * weight[k, 0, a]
-            for b in range(WIDTH):
+            for b in range(weight.shape[2]):
                 field[j0 + a, i0 + b] += share * weight[k, 1, b]

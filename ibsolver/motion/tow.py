@@ -3,7 +3,8 @@
 With final speed U = 1 and start distance s0 the ramp lasts T = 2 s0; x = t / T:
 
 * "linear": x;  "smooth": 10 x^3 - 15 x^4 + 6 x^5;  "impulsive": 1 from the start;
-* "hold acceleration": linear, reaching U at the end of the travel (s0 = travel).
+* "hold acceleration": linear, reaching U at the end of the travel (s0 = travel);
+* "still": the carriage stays; U is only the reference speed, and travel counts convective times.
 
 A measured profile is interpolated by the shape-preserving cubic of Fritsch & Carlson (1980).
 """
@@ -32,7 +33,7 @@ class TowLaw:
 
     Parameters
     ----------
-    kind : {"impulsive", "linear", "smooth", "profile"}
+    kind : {"impulsive", "linear", "smooth", "profile", "still"}
     ramp_time : float
         Duration T of the start; 0 for "impulsive", the record's length for a profile.
     profile : tuple of (time, speed)
@@ -54,6 +55,8 @@ class TowLaw:
 
     def speed(self, t: float) -> float:
         """Return the speed at time t."""
+        if self.kind == "still":
+            return 0.0
         if self.kind == "impulsive":
             return 1.0 if t >= 0 else 0.0
         if self.kind == "profile":
@@ -63,7 +66,7 @@ class TowLaw:
 
     def acceleration(self, t: float) -> float:
         """Return the acceleration at time t (0 for an impulsive start, whose jump is at t = 0)."""
-        if self.kind == "impulsive":
+        if self.kind in ("impulsive", "still"):
             return 0.0
         if self.kind == "profile":
             return float(self._curve.derivative()(t)) if self.profile[0][0] <= t <= self.profile[-1][0] else 0.0
@@ -73,10 +76,10 @@ class TowLaw:
         return 1.0 / self.ramp_time if self.kind == "linear" else 30.0 * (x * (1.0 - x)) ** 2 / self.ramp_time
 
     def distance(self, t: float) -> float:
-        """Return the distance towed since t = 0."""
+        """Return the distance towed since t = 0 (the time itself where the carriage is still)."""
         if t <= 0:
             return 0.0
-        if self.kind == "impulsive":
+        if self.kind in ("impulsive", "still"):
             return t
         if self.kind == "profile":
             first, last = self.profile[0], self.profile[-1]
@@ -124,8 +127,8 @@ def tow_law(tow: Tow, travel: float) -> TowLaw:
     """Return the law of a case's tow over `travel` chords."""
     if tow.profile:
         return TowLaw("profile", tow.profile[-1][0], tow.profile)
-    if tow.start == "impulsive":
-        return TowLaw("impulsive", 0.0)
+    if tow.start in ("impulsive", "still"):
+        return TowLaw(tow.start, 0.0)
     if tow.start == "hold acceleration":
         return TowLaw("linear", 2.0 * travel)
     return TowLaw(tow.start, 2.0 * tow.start_distance)

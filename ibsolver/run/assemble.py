@@ -6,10 +6,12 @@ from collections.abc import Mapping
 
 import numpy as np
 
-from ibsolver.body.build import build_rig
-from ibsolver.body.rig import Configuration, Rig
+from ibsolver.body.build import build_rig, mass_rig
+from ibsolver.body.regularisation import AT_REST, MOVING
+from ibsolver.body.rig import Rig
 from ibsolver.case.model import Case
-from ibsolver.errors import CaseError, Fault, StorageError
+from ibsolver.case.placement import reach
+from ibsolver.errors import StorageError
 from ibsolver.flow.advance import Problem, prepare, scratch_arrays
 from ibsolver.flow.balance import ControlVolume
 from ibsolver.flow.boundary import BoundaryConditions
@@ -19,79 +21,84 @@ from ibsolver.flow.state import FlowState, empty_state
 from ibsolver.flow.timestep import StepRule, choose_explicit
 from ibsolver.flow.viscous import ImplicitDiffusion
 from ibsolver.motion.tow import tow_law
-from ibsolver.run.domain import build_grid, reach_of, side_conditions
+from ibsolver.run.domain import build_grid, side_conditions
+from ibsolver.run.mechanics import gravity_of, longest_for_springs, mechanics_of, require_resolvable_springs
+from ibsolver.run.motions import anything_moves, motions_of
 
 
-def assemble(case: Case) -> Problem:
+def assemble(case: Case, rig: Rig | None = None) -> Problem:
     """Return everything about a run that does not change while it marches.
+
+    Parameters
+    ----------
+    case : Case
+    rig : Rig, optional
+        Bodies in place of those of the case, for experiments that no case file describes.
 
     Raises
     ------
     IbsolverError
         With exit status 3 where bodies and grid do not fit.
     """
-    _refuse_what_moves(case)
     spacing = 1.0 / case.grid.cells_per_chord
-    rig = build_rig(case, spacing)
-    still = _still_configuration(case, rig)
-    placement = rig.place(still)
-    grid = build_grid(case, reach_of(rig, [rig.shapes(placement)]))
+    rule = MOVING if anything_moves(case) else AT_REST
+    rig = build_rig(case, spacing, rule) if rig is None else rig
+    motions = motions_of(case, rig)
+    placement = rig.place(motions.configuration(0.0))
+    grid = build_grid(case, reach(case) if rig.links else None)
     sides = BoundaryConditions(grid, **side_conditions(case))
     poisson = PoissonSolver(grid)
     reynolds, courant = case.tow.reynolds, case.run.courant
     explicit = choose_explicit(grid.spacing, reynolds, courant, grid.periodic_x or grid.periodic_y)
-    coupling = Coupling(grid, sides, poisson, rig.size)
+    coupling = Coupling(grid, sides, poisson, rig.size, rule.kernel)
     tow = tow_law(case.tow, case.run.travel)
+    mechanics = mechanics_of(case, rig)
+    bare = mass_rig(rig)
+    steps = StepRule(courant, grid.spacing, reynolds, explicit, case.run.fixed_step, longest_for_springs(mechanics, rig))
+    require_resolvable_springs(steps, mechanics, rig)
     problem = Problem(
         grid=grid,
         sides=sides,
         poisson=poisson,
         rig=rig,
         coupling=coupling,
-        rule=StepRule(courant, grid.spacing, reynolds, explicit, case.run.fixed_step),
+        rule=steps,
         reynolds=reynolds,
         tow_speed=tow.speed,
         tow_distance=tow.distance,
         time_end=tow.time_of(case.run.travel),
-        configuration=lambda time: still,
-        moving=False,
+        configuration=motions.configuration,
         slip_tolerance=case.run.slip_tolerance,
         repeats=case.run.repeats,
         placement=placement,
+        moving_points=motions.moving_points(rig),
+        mechanics=mechanics,
+        mass_rig=bare,
+        masses=_spread_over(bare, [flap.mass for flap in mechanics]),
+        buoyant_masses=_spread_over(bare, [flap.buoyant_mass for flap in mechanics]),
+        gravity=gravity_of(case),
         volume=ControlVolume(grid, 1.0 / reynolds) if rig.links else None,
         implicit=None if explicit else ImplicitDiffusion(sides, 1.0 / reynolds),
     )
     if rig.size:
         coupling.locate(placement.points)
-        coupling.build_exact()
+        if problem.moving_points is None:
+            coupling.build_from_lattice()
+        else:
+            coupling.build_exact()
         coupling.factorise(rig.weights(placement, grid.spacing))
     return problem
 
 
-def _refuse_what_moves(case: Case) -> None:
-    """Refuse, with a sentence, motions on the grid, which this version does not march."""
-    moving = [f"flap {flap.name!r} is {flap.mount}" for flap in case.flaps if flap.mount != "fixed"]
-    if case.incidence_motion is not None or case.heave_motion is not None:
-        moving.append("[motion] moves the plate")
-    if moving:
-        problem = f"{'; '.join(moving)}: this version computes plates and flaps that rest on the carriage."
-        raise CaseError([Fault("case", 0, "", "", problem, 'Use mount = "fixed" and leave out [motion].')])
-
-
-def _still_configuration(case: Case, rig: Rig) -> Configuration:
-    """Return the configuration at the start, openings in the order of the rig."""
-    incidence = case.plate.incidence if case.plate else case.outline.incidence if case.outline else 0.0
-    opening = {flap.name: flap.opening for flap in case.flaps}
-    return Configuration(
-        incidence=incidence,
-        openings=tuple(opening[link.name] for link in rig.flaps),
-        opening_rates=(0.0,) * len(rig.flaps),
-    )
+def _spread_over(bare: Rig, per_length: list[float]) -> np.ndarray:
+    """Return a quantity per length of each flap as shares of its mass points."""
+    values = np.array([0.0, *per_length])
+    return values[bare.link_of_point] * bare.ds if bare.size else np.zeros(0)
 
 
 def start_state(case: Case, problem: Problem) -> FlowState:
     """Return the state a run starts from, prepared for the first step."""
-    state = empty_state(problem.grid, problem.rig.size)
+    state = empty_state(problem.grid, problem.rig.size, len(problem.mechanics), problem.mass_rig.size)
     speed = problem.tow_speed(0.0)
     stream = case.initial.stream
     if case.initial.field == "tow":
@@ -115,7 +122,7 @@ def restored_state(problem: Problem, arrays: Mapping[str, np.ndarray], numbers: 
     StorageError
         If its arrays do not fit the grid.
     """
-    state = empty_state(problem.grid, problem.rig.size)
+    state = empty_state(problem.grid, problem.rig.size, len(problem.mechanics), problem.mass_rig.size)
     for name, array in state.arrays().items():
         if name not in arrays or arrays[name].shape != array.shape or arrays[name].dtype != array.dtype:
             raise StorageError(f"The checkpoint's {name} does not fit this case; it was written for another grid.")

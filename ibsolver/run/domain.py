@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import numpy as np
 
-from ibsolver.body.rig import Rig
 from ibsolver.case.model import Case, Side
 from ibsolver.flow.boundary import SideCondition
 from ibsolver.grid.staggered import GridError, StaggeredGrid
@@ -87,11 +86,3 @@ def extent(case: Case) -> tuple[float, float, float, float]:
     above = next(d for d in (tank.wall_above, domain.above, domain.lateral) if d is not None)
     return (-domain.upstream, domain.downstream, -below, above)
 
-
-def reach_of(rig: Rig, outlines: list[dict[str, np.ndarray]]) -> tuple[float, float, float, float] | None:
-    """Return the box around the outlines of all configurations, None without a body."""
-    if not rig.links:
-        return None
-    corners = np.concatenate([np.concatenate(list(shapes.values())) for shapes in outlines])
-    low, high = corners.min(axis=0), corners.max(axis=0)
-    return (float(low[0]), float(high[0]), float(low[1]), float(high[1]))

@@ -251,7 +251,6 @@ def _one_step(state: FlowState, problem: Problem, recorder: Recorder, last: dequ
         With the advice which knob to turn, and why.
     """
     dt = problem.rule.next_step(state.rate, state.dt)
-    before = problem.tow_speed(state.time)
     report = advance(state, problem, dt)
     row = recorder.sampler.row(state, report)
     last.append(row)
@@ -264,7 +263,7 @@ def _one_step(state: FlowState, problem: Problem, recorder: Recorder, last: dequ
             f"if the cells are too coarse for Re = {problem.reynolds:g}. The last good frame and the last "
             f"{len(last)} step records (log.jsonl) are kept."
         )
-    recorder.step(state, row, (problem.tow_speed(state.time) - before) / dt)
+    recorder.step(state, row, report.felt)
     return report
 
 

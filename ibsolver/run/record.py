@@ -13,6 +13,7 @@ from ibsolver.case.encode import case_hash, physics_hash
 from ibsolver.case.model import Case
 from ibsolver.errors import StorageError
 from ibsolver.flow.advance import Problem
+from ibsolver.flow.loads import Acceleration
 from ibsolver.flow.state import FlowState
 from ibsolver.run.sampling import SIGNS, HistorySampler, frame_arrays, frame_attributes
 from ibsolver.runfile import layout, manifest
@@ -78,7 +79,7 @@ class Recorder:
         self._status_due = self._checkpoint_due = time.monotonic()
         self._checkpoints: dict[str, str] = {}
         self._started = now_utc()
-        self._acceleration = 0.0
+        self._felt = Acceleration(0.0)
         if checkpoint is None:
             self._drop_frames_from(0)
         else:
@@ -100,15 +101,15 @@ class Recorder:
         """Write frame 0, the flow before the first step."""
         self._frame(state)
 
-    def step(self, state: FlowState, row: Mapping[str, float], acceleration: float) -> None:
+    def step(self, state: FlowState, row: Mapping[str, float], felt: Acceleration) -> None:
         """Record one step: its history row, and a frame if one is due."""
-        self._acceleration = acceleration
+        self._felt = felt
         self.history.append(row)
         if state.travel >= self.schedule.next_travel - 1e-12:
             self._frame(state)
 
     def _frame(self, state: FlowState) -> None:
-        arrays = frame_arrays(state, self.problem, self._acceleration)
+        arrays = frame_arrays(state, self.problem, self._felt)
         path = self.directory / layout.FRAMES / layout.frame_name(self.schedule.frames)
         attributes = frame_attributes(self.case, state, self._hash)
         self._keep_reserve(path)

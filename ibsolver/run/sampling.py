@@ -8,11 +8,12 @@ from typing import Any
 
 import numpy as np
 
-from ibsolver.body.rig import Rig
+from ibsolver.body.rig import Link, Rig
 from ibsolver.case import scales
 from ibsolver.case.model import Case
 from ibsolver.flow.advance import Problem, StepReport
-from ibsolver.flow.loads import hydrodynamic
+from ibsolver.flow.loads import Acceleration, hydrodynamic
+from ibsolver.flow.moving import FlapReport, configuration_of
 from ibsolver.flow.state import FlowState
 from ibsolver.kernels import momentum
 
@@ -22,7 +23,7 @@ SIGNS = (
 )
 
 
-def history_columns(rig: Rig) -> dict[str, str]:
+def history_columns(rig: Rig, moving: bool) -> dict[str, str]:
     """Return the history's columns with their meaning and unit, in order."""
     columns = {
         "step": "number of the time step [1]",
@@ -42,9 +43,20 @@ def history_columns(rig: Rig) -> dict[str, str]:
         "dt": "length of the step [c/U]",
         "repeats": "Poisson solves of the step [1]",
     }
+    if moving:
+        columns["heave"] = "heave of the pivot [chords]"
+        columns["power_pitch"] = "power that the pitch drive gives to the fluid, mean over the step [rho U^3 c]"
+        columns["power_heave"] = "power that the heave drive gives to the fluid, mean over the step [rho U^3 c]"
     for link in rig.flaps:
-        columns[f"opening_deg_{link.name}"] = f"opening of flap {link.name} [deg]"
-        columns[f"CH_{link.name}"] = f"hinge moment of flap {link.name} over rho U^2/2 times its length squared [1]"
+        name = link.name
+        columns[f"opening_deg_{name}"] = f"opening of flap {name} [deg]"
+        columns[f"CH_{name}"] = f"moment of the fluid on flap {name} about its hinge, over rho U^2/2 length^2 [1]"
+        if moving:
+            columns[f"opening_rate_{name}"] = f"opening rate of flap {name} [rad U/c]"
+            columns[f"CH_spring_{name}"] = "the same of spring and damper [1]"
+            columns[f"CH_stop_{name}"] = "the same of a stop [1]"
+            columns[f"power_{name}"] = f"power of the drive of flap {name}, mean over the step [rho U^3 c]"
+            columns[f"energy_{name}"] = f"kinetic energy of flap {name} and energy of its spring [rho U^2 c^2]"
     return columns
 
 
@@ -61,14 +73,14 @@ class HistorySampler:
         self._problem = problem
         self._instantaneous = case.tow.coefficient_speed == "instantaneous"
         self._seconds = scales.convective_time(case)
-        self.columns = history_columns(problem.rig)
+        self.columns = history_columns(problem.rig, problem.moving)
 
     def row(self, state: FlowState, report: StepReport) -> dict[str, float]:
         """Return one row, in the order of `columns`."""
         problem, loads = self._problem, report.loads
         speed = problem.tow_speed(state.time)
         scale = self._coefficient_scale(state, report)
-        here = problem.configuration(state.time)
+        here = configuration_of(problem, state)
         row = {
             "step": state.step,
             "time_s": state.time * self._seconds if self._seconds is not None else math.nan,
@@ -87,10 +99,29 @@ class HistorySampler:
             "dt": report.dt,
             "repeats": report.repeats,
         }
+        if problem.moving:
+            row["heave"] = here.heave
+            row["power_pitch"] = -loads.moment * here.incidence_rate
+            row["power_heave"] = -loads.lift * here.heave_rate
         for k, link in enumerate(problem.rig.flaps):
-            row[f"opening_deg_{link.name}"] = math.degrees(here.openings[k])
-            row[f"CH_{link.name}"] = scale * loads.hinge_moments[k] / link.length**2
+            row |= self._flap_entries(link, here.openings[k], loads.hinge_moments[k], scale / link.length**2)
+            if problem.moving:
+                row |= self._moving_entries(link, report.flaps[k], scale / link.length**2)
         return row
+
+    @staticmethod
+    def _flap_entries(link: Link, opening: float, moment: float, scale: float) -> dict[str, float]:
+        return {f"opening_deg_{link.name}": math.degrees(opening), f"CH_{link.name}": scale * moment}
+
+    @staticmethod
+    def _moving_entries(link: Link, flap: FlapReport, scale: float) -> dict[str, float]:
+        return {
+            f"opening_rate_{link.name}": flap.rate,
+            f"CH_spring_{link.name}": scale * flap.spring,
+            f"CH_stop_{link.name}": scale * flap.stop,
+            f"power_{link.name}": flap.power,
+            f"energy_{link.name}": flap.energy,
+        }
 
     def _coefficient_scale(self, state: FlowState, report: StepReport) -> float:
         """Return what turns a load in rho U^2 c into a coefficient on the chosen reference speed."""
@@ -100,12 +131,12 @@ class HistorySampler:
         return 2.0 / speed**2 if speed > 0 else math.nan
 
 
-def frame_arrays(state: FlowState, problem: Problem, acceleration: float) -> dict[str, np.ndarray]:
+def frame_arrays(state: FlowState, problem: Problem, felt: Acceleration) -> dict[str, np.ndarray]:
     """Return the datasets of a frame (`ibsolver.runfile.layout`)."""
     grid = problem.grid
     vorticity = np.empty((grid.ny + 1, grid.nx + 1))
     momentum.corner_vorticity(state.u, state.v, grid.x_metrics, grid.y_metrics, vorticity)
-    on_body = hydrodynamic(problem.rig, state.force, acceleration)
+    on_body = hydrodynamic(problem.rig, state.force, felt)
     return {
         "x_faces": grid.x_faces,
         "y_faces": grid.y_faces,

@@ -3,25 +3,35 @@
 from __future__ import annotations
 
 import io
+import re
+import textwrap
+from contextlib import AbstractContextManager
 from pathlib import Path
+from typing import Any
 
-from matplotlib import rc_context
+import matplotlib.style
+from matplotlib.axes import Axes
 from matplotlib.backends.backend_agg import FigureCanvasAgg
 from matplotlib.colors import LinearSegmentedColormap
 from matplotlib.figure import Figure
+from matplotlib.font_manager import FontProperties
 
 from ibsolver.runfile.atomic import write_bytes
 
 DPI = 150
 INK = "#22252b"
-FAINT = "#8b9099"
-LIFT, DRAG, THIRD, FOURTH = "#0b5c8a", "#b3501e", "#5b7f2a", "#6d4c8f"
+QUIET = "#5a6069"  # small print: grey, and still above a contrast of 6 to 1 on white
+FAINT = "#8b9099"  # lines only, never letters
+GRID = "#b9bec6"
+# Of middling lightness, so that thin dark dashes inside a curve are seen; apart in hue and in lightness.
+LIFT, DRAG, THIRD, FOURTH = "#2f86bb", "#cf6f2e", "#4f7a1f", "#6d4c8f"
 BODY = "#14161a"
 
 # Clockwise rotation deep teal, counter-clockwise rust, nothing white: the lightness falls equally on both sides.
+# The ends stay well lighter than a body's black, so that a plate is seen inside its own boundary layer.
 ROTATION = LinearSegmentedColormap.from_list(
     "rotation",
-    ["#0a2f3c", "#14596b", "#3d93a3", "#a5d0d3", "#ffffff", "#f0c6a4", "#d1854a", "#964413", "#4c1d05"],
+    ["#0c4152", "#17667a", "#3d93a3", "#a5d0d3", "#ffffff", "#f0c6a4", "#d1854a", "#a34d18", "#702c08"],
     N=256,
 )
 
@@ -41,13 +51,12 @@ _STYLE = {
     "axes.linewidth": 0.8,
     "lines.linewidth": 1.4,
     "legend.frameon": False,
-    "axes.spines.top": False,
 }
 
 
-def style() -> rc_context:
-    """Return the context in which a figure is made."""
-    return rc_context(_STYLE)
+def style() -> AbstractContextManager[None]:
+    """Return the context in which a figure is made; a user's own plotting defaults do not reach into it."""
+    return matplotlib.style.context(_STYLE, after_reset=True)
 
 
 def new_figure(width: float, height: float, layout: str = "constrained") -> Figure:
@@ -58,21 +67,63 @@ def new_figure(width: float, height: float, layout: str = "constrained") -> Figu
 
 
 def save(figure: Figure, path: Path | str) -> Path:
-    """Write the figure as PNG, whole or not at all."""
+    """Write the figure as PNG, whole or not at all.
+
+    Raises
+    ------
+    StorageError
+        If the file cannot be written; an older file of that name is untouched.
+    """
     buffer = io.BytesIO()
     figure.savefig(buffer, format="png", dpi=DPI)
     write_bytes(path, buffer.getvalue())
     return Path(path)
 
 
-def heading(info: dict[str, object]) -> str:
+def heading(info: dict[str, Any]) -> str:
     """Return the title of a run with its Reynolds number, unless the title says it already."""
-    title = str(info["title"])
-    return title if "Re" in title else f"{title}, Re = {info['reynolds']:,.0f}"
+    title, reynolds = str(info["title"]), info.get("reynolds")
+    if reynolds is None or re.search(r"\b(Re|Reynolds)\b", title):
+        return title
+    return f"{title}, Re = {reynolds:,.0f}" if reynolds >= 10 else f"{title}, Re = {reynolds:.3g}"
+
+
+def put_heading(figure: Figure, text: str) -> None:
+    """Put a title over the figure, broken into as many lines as the width asks for."""
+    figure.suptitle(fitted(figure, text, 10), fontsize=10, x=0.01, ha="left")
+
+
+def put_small_print(figure: Figure, text: str) -> None:
+    """Put small grey text under the figure."""
+    if text:
+        figure.supxlabel(fitted(figure, text, 8), fontsize=8, color=QUIET, x=0.01, ha="left")
+
+
+def trim_height(figure: Figure, margin: float = 0.08) -> None:
+    """Take away the height that panels of equal scale leave empty; `margin` in inches remains above and below."""
+    figure.draw_without_rendering()
+    figure.set_figheight(min(figure.get_figheight(), figure.get_tightbbox().height + 2.0 * margin))
+
+
+def label_panel(ax: Axes, text: str) -> None:
+    """Put a panel's title at its left edge."""
+    ax.set_title(text, loc="left", fontsize=9)
+
+
+def fitted(figure: Figure, text: str, points: float, share: float = 0.96) -> str:
+    """Return a text broken into lines no wider than a share of the figure, on the average of its own letters."""
+    if not text:
+        return text
+    canvas = figure.canvas.get_renderer()
+    longest = max(text.splitlines(), key=len)
+    width = canvas.get_text_width_height_descent(longest, FontProperties(size=points), False)[0] / figure.dpi
+    return wrapped(text, max(20, int(len(longest) * share * figure.get_figwidth() / max(width, 0.1))))
 
 
 def wrapped(text: str, width: int) -> str:
-    """Return a text broken into lines of at most `width` characters."""
-    import textwrap
+    """Return a text broken into lines of at most `width` characters; line breaks of its own are kept.
 
-    return "\n".join(textwrap.wrap(text, width))
+    A Reynolds number stays together with its value.
+    """
+    together = re.sub(r"\bRe (= )?(?=\d)", lambda found: found.group().replace(" ", "\N{NO-BREAK SPACE}"), text)
+    return "\n".join("\n".join(textwrap.wrap(line, width)) for line in together.splitlines())

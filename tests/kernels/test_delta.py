@@ -10,7 +10,7 @@ from hypothesis import strategies as st
 from ibsolver.kernels import delta
 from tests.grids import plain
 
-KINDS = (delta.ROMA, delta.HAT, delta.QUADRATIC, delta.CUBIC)
+KINDS = (delta.ROMA, delta.HAT, delta.QUADRATIC, delta.CUBIC, delta.QUINTIC)
 
 
 @pytest.mark.parametrize("kind", KINDS)
@@ -18,9 +18,9 @@ KINDS = (delta.ROMA, delta.HAT, delta.QUADRATIC, delta.CUBIC)
 @settings(max_examples=50, deadline=None)
 @given(position=st.floats(-20, 20))
 def test_weights_sum_to_one_and_keep_the_first_moment(kind, form, position):
-    weight = np.empty(delta.WIDTH)
+    weight = np.empty(delta.WIDTHS[kind])
     lowest = form(delta.weights)(kind, position, weight)
-    where = lowest + np.arange(delta.WIDTH)
+    where = lowest + np.arange(delta.WIDTHS[kind])
     assert abs(weight.sum() - 1) < 1e-13
     assert abs(weight @ where - position) < 1e-12
 
@@ -29,7 +29,7 @@ def test_weights_sum_to_one_and_keep_the_first_moment(kind, form, position):
 @given(position=st.floats(-5, 5))
 def test_roma_sum_of_squares_does_not_depend_on_the_position(position):
     """Roma, Peskin & Berger (1999): the squares add up to 1/2 wherever the point lies."""
-    weight = np.empty(delta.WIDTH)
+    weight = np.empty(delta.WIDTHS[delta.ROMA])
     delta.weights(delta.ROMA, position, weight)
     assert abs(weight @ weight - 0.5) < 1e-12
 
@@ -38,7 +38,7 @@ def test_roma_sum_of_squares_does_not_depend_on_the_position(position):
 def test_spread_is_the_adjoint_of_interpolate(form):
     rng = np.random.default_rng(2)
     points = rng.uniform(0.3, 0.7, (6, 2))
-    index, weight = np.zeros((6, 2), dtype=np.int64), np.zeros((6, 2, delta.WIDTH))
+    index, weight = np.zeros((6, 2), dtype=np.int64), np.zeros((6, 2, delta.WIDTHS[delta.ROMA]))
     form(delta.locate)(delta.ROMA, points, 0.0, 0.0, 0.05, index, weight)
     field, force = rng.standard_normal((21, 22)), rng.standard_normal((6, 2))
     here, spread = np.zeros((6, 2)), np.zeros_like(field)
@@ -51,7 +51,7 @@ def test_spread_is_the_adjoint_of_interpolate(form):
 def test_interpolation_of_a_linear_field_is_exact():
     rng = np.random.default_rng(4)
     points = rng.uniform(0.3, 0.7, (9, 2))
-    index, weight = np.zeros((9, 2), dtype=np.int64), np.zeros((9, 2, delta.WIDTH))
+    index, weight = np.zeros((9, 2), dtype=np.int64), np.zeros((9, 2, delta.WIDTHS[delta.ROMA]))
     h = 0.05
     delta.locate(delta.ROMA, points, 0.1, -0.2, h, index, weight)
     x, y = 0.1 + h * np.arange(25), -0.2 + h * np.arange(25)
