@@ -10,10 +10,10 @@ import numpy as np
 
 from ibsolver.case.encode import decode
 from ibsolver.case.model import Case
-from ibsolver.errors import StorageError, UsageError
+from ibsolver.errors import CaseError, StorageError, UsageError
 from ibsolver.runfile import layout
 from ibsolver.runfile.atomic import read_json
-from ibsolver.runfile.frame import Frame, read_frame
+from ibsolver.runfile.frame import Frame, read_frame, read_moment
 from ibsolver.runfile.history import History, read_history
 
 
@@ -44,7 +44,11 @@ class RunView:
     @cached_property
     def case(self) -> Case:
         """The case that was run."""
-        return decode(read_json(self.directory / layout.RESOLVED))
+        path = self.directory / layout.RESOLVED
+        try:
+            return decode(read_json(path))
+        except CaseError as error:
+            raise StorageError(f"{path}: damaged. {error}") from None
 
     @property
     def has_body(self) -> bool:
@@ -78,23 +82,27 @@ class RunView:
             raise UsageError(f"{self.directory}: frame {index} asked for; there are {self.frames}.")
         return read_frame(self.frame_files[index])
 
+    @property
+    def times(self) -> np.ndarray:
+        """Time of every frame (c/U), shape (frames,)."""
+        return self._moments[:, 0]
+
+    @property
+    def travels(self) -> np.ndarray:
+        """Travel of every frame (chords), shape (frames,)."""
+        return self._moments[:, 1]
+
+    @cached_property
+    def _moments(self) -> np.ndarray:
+        """Time and travel of every frame, from the frames themselves: a resumed run may have another interval."""
+        return np.array([read_moment(file) for file in self.frame_files]).reshape(-1, 2)
+
     def frames_at(self, travels: list[float]) -> list[Frame]:
-        """Return the frames nearest to the given travels (chords)."""
+        """Return the frames nearest to the given travels (chords), each frame once."""
         if not self.frames:
             raise StorageError(f"{self.directory}: no frames yet.")
-        towed = np.interp(*self._frame_index())
-        return [self.frame(int(np.argmin(np.abs(towed - travel)))) for travel in travels]
-
-    def _frame_index(self) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
-        """Return arguments of `numpy.interp` that give the travel of every frame.
-
-        Frames are due at whole multiples of the interval; only the first and the last need reading.
-        """
-        number = np.arange(self.frames)
-        every = self.case.output.frame_every
-        travel = number * every
-        travel[-1] = self.frame(-1).travel
-        return number, number, travel
+        nearest = [int(np.argmin(np.abs(self.travels - travel))) for travel in travels]
+        return [self.frame(index) for index in dict.fromkeys(nearest)]
 
 
 def open_run(directory: Path | str) -> RunView:

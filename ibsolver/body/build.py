@@ -65,9 +65,7 @@ def plate_link(plate: Plate, spacing: float, rule: Regularisation) -> Link:
 
 def flap_link(flap: Flap, parent: int, case: Case, spacing: float, rule: Regularisation) -> Link:
     """Return the link of a flap; its points reach from the hinge, where their weight vanishes, to near the tip."""
-    s, ds = layout.along_line(
-        0.0, flap.length, rule.spacing * spacing, 0.5 * spacing, rule.edge_retraction * spacing
-    )
+    s, ds = layout.along_line(0.0, flap.length, rule.spacing * spacing, 0.5 * spacing, rule.edge_retraction * spacing)
     offset = case.plate.pivot if parent == 0 and case.plate is not None else 0.0
     return Link(
         flap.name,

@@ -6,6 +6,7 @@ import numpy as np
 
 from ibsolver.errors import IbsolverError
 
+
 class BodyError(IbsolverError):
     """A body that cannot be put on the grid."""
 

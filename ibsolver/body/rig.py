@@ -8,6 +8,7 @@ its tip. A closed flap lies on its parent, tip toward the parent's trailing edge
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from functools import cached_property
 
 import numpy as np
 
@@ -150,6 +151,26 @@ class Rig:
             points.append(origins[k] + arms)
             velocities.append(origin_velocities[k] + rates[k] * _turned(arms))
         return Placement(np.concatenate(points), np.concatenate(velocities), origins, angles, rates, origin_velocities)
+
+    @cached_property
+    def points_beyond(self) -> tuple[np.ndarray, ...]:
+        """For every link, which points (mask of shape (n,)) belong to it or to anything that hangs on it."""
+        families = []
+        for k in range(len(self.links)):
+            family = {k}
+            for index in range(k + 1, len(self.links)):
+                if self.links[index].parent in family:
+                    family.add(index)
+            families.append(np.isin(self.link_of_point, list(family)))
+        return tuple(families)
+
+    def per_opening_rate(self, placement: Placement, flap: int) -> np.ndarray:
+        """Return the velocity of all points, shape (n, 2), per unit opening rate of one flap (0 is the first)."""
+        mine = self.points_beyond[flap + 1]
+        velocity = np.zeros_like(placement.points)
+        arms = placement.points[mine] - placement.origins[flap + 1]
+        velocity[mine] = self.links[flap + 1].side * _turned(arms)
+        return velocity
 
     def shapes(self, placement: Placement) -> dict[str, np.ndarray]:
         """Return the outline of every link on the grid, by name, each of shape (k, 2)."""

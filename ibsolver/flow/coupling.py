@@ -30,6 +30,7 @@ from ibsolver.kernels import coupling as coupling_kernel
 from ibsolver.kernels import delta, momentum
 
 KERNELS = {"roma": delta.ROMA, "quintic": delta.QUINTIC}
+TABLE_REACH = 24  # cells: the largest offset for which entries are taken from the table, and some
 SHIFT = 1e-9  # of the mean diagonal: makes the null force of a closed curve (constant normal force) definite
 
 
@@ -41,6 +42,12 @@ class Stencils:
     weight_u: np.ndarray
     index_v: np.ndarray
     weight_v: np.ndarray
+    cells: np.ndarray  # positions in cells, shape (n, 2)
+
+    @property
+    def arrays(self) -> tuple[np.ndarray, np.ndarray, np.ndarray, np.ndarray]:
+        """Index and weights on the u grid, then on the v grid."""
+        return self.index_u, self.weight_u, self.index_v, self.weight_v
 
     @classmethod
     def empty(cls, count: int, width: int) -> Stencils:
@@ -50,6 +57,7 @@ class Stencils:
             np.zeros((count, 2, width)),
             np.zeros((count, 2), dtype=np.int64),
             np.zeros((count, 2, width)),
+            np.zeros((count, 2)),
         )
 
 
@@ -105,6 +113,7 @@ class Coupling:
         self._require_inside_core(points)
         h, s = self.grid.spacing, self.stencils
         x0, y0 = self._x_origin, self._y_origin
+        s.cells[...] = points / h
         delta.locate(self.kernel, points, x0, y0 + 0.5 * h, h, s.index_u, s.weight_u)
         delta.locate(self.kernel, points, x0 + 0.5 * h, y0, h, s.index_v, s.weight_v)
 
@@ -155,9 +164,11 @@ class Coupling:
         moved = np.zeros_like(force)
         coupling_kernel.lattice_product(
             columns,
-            *(here.index_u, here.weight_u, here.index_v, here.weight_v),
-            *(there.index_u, there.weight_u, there.index_v, there.weight_v),
-            projected_response(self._reach()),
+            here.cells,
+            there.cells,
+            here.arrays,
+            there.arrays,
+            projected_response(TABLE_REACH),
             force,
             moved,
         )
@@ -205,18 +216,10 @@ class Coupling:
         """Fill the rows and columns of the given points (None: all) from the lattice Green's function."""
         s = self.stencils
         changed = np.arange(self.count) if rows is None else rows
-        tables = projected_response(self._reach())
-        coupling_kernel.lattice_rows(
-            changed, s.index_u, s.weight_u, s.index_v, s.weight_v, self._scale, tables, self.matrix
-        )
+        tables = projected_response(TABLE_REACH)
+        coupling_kernel.lattice_rows(changed, s.cells, s.arrays, self._scale, tables, self.matrix)
         both = (2 * changed[:, None] + np.arange(2)).ravel()
         self.matrix[:, both] = self.matrix[both].T
-
-    def _reach(self) -> int:
-        """Return the largest offset between two stencils that the core allows."""
-        x_low, x_high, y_low, y_high = self.grid.core
-        cells = max(x_high - x_low, y_high - y_low) / self.grid.spacing
-        return int(64 * np.ceil((cells + 8) / 64))
 
     def factorise(self, weights: np.ndarray) -> None:
         """Factor the matrix for the given weights, shape (n,)."""

@@ -75,7 +75,7 @@ def loads_of(rig: Rig, placement: Placement, force: np.ndarray, acceleration: Ac
     turning += _inside_torque(rig, placement, inside, acceleration)
     hinge_moments = []
     for k, link in enumerate(rig.links[1:], start=1):
-        mine = np.isin(rig.link_of_point, descendants(rig, k))
+        mine = rig.points_beyond[k]
         about_hinge = torque(placement.points[mine], on_body[mine], placement.origins[k])
         hinge_moments.append(link.side * about_hinge)
     return Loads(float(drag), float(lift), -float(turning), tuple(map(float, hinge_moments)))
@@ -128,12 +128,3 @@ def torque(points: np.ndarray, force: np.ndarray, about: np.ndarray) -> float:
     """Return the counter-clockwise torque of point forces about a point."""
     arm = points - about
     return float(arm[:, 0] @ force[:, 1] - arm[:, 1] @ force[:, 0])
-
-
-def descendants(rig: Rig, k: int) -> list[int]:
-    """Return link k and every link that hangs on it."""
-    family = [k]
-    for index in range(k + 1, len(rig.links)):
-        if rig.links[index].parent in family:
-            family.append(index)
-    return family

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from ibsolver.body.rig import Configuration, Rig
+from ibsolver.body.rig import Configuration, Placement, Rig
 from ibsolver.flow.hinge import FREE, HingeTerms, RigidMotion, hinge_terms
 
 if TYPE_CHECKING:
@@ -30,6 +30,8 @@ class Movement:
         The same of the mass points.
     base_motion : ndarray, shape (3,)
         Velocity of the base body's centroid and its counter-clockwise rate.
+    masses : Placement
+        Of the mass points at the end of the step.
     terms : HingeTerms or None
         Hinge equations, None without a free flap.
     rates, held, reaction : ndarray, shape (m,)
@@ -40,6 +42,7 @@ class Movement:
     velocity: np.ndarray
     mass_velocity: np.ndarray
     base_motion: np.ndarray
+    masses: Placement
     terms: HingeTerms | None = None
     mass_unit: np.ndarray | None = None
     rates: np.ndarray | None = None
@@ -118,11 +121,13 @@ def begin_step(state: FlowState, problem: Problem, dt: float) -> Movement:
     coupling.move(state.points, problem.placement.points)
     coupling.build_from_lattice(problem.moving_points)
     coupling.factorise(problem.rig.weights(problem.placement, problem.grid.spacing))
+    masses = problem.mass_rig.place(configuration)
     movement = Movement(
         configuration,
         problem.placement.velocities,
-        problem.mass_rig.place(configuration).velocities,
+        masses.velocities,
         _base_motion(problem.rig, configuration),
+        masses,
     )
     if any(flap.free for flap in problem.mechanics):
         _prepare_hinges(movement, state, problem, dt)
@@ -142,8 +147,8 @@ def _prepare_hinges(movement: Movement, state: FlowState, problem: Problem, dt: 
     speeds = (problem.tow_speed(state.time), problem.tow_speed(state.time + dt))
     pull = np.array([(speeds[1] - speeds[0]) / dt, 0.0])
     free = [k for k, flap in enumerate(problem.mechanics) if flap.free]
-    unit = np.array([_unit(problem.rig, movement.configuration, k) for k in free])
-    mass_unit = np.array([_unit(problem.mass_rig, movement.configuration, k) for k in free])
+    unit = np.array([problem.rig.per_opening_rate(problem.placement, k) for k in free])
+    mass_unit = np.array([problem.mass_rig.per_opening_rate(movement.masses, k) for k in free])
     held_layer = problem.rig.held
     points = RigidMotion(unit, movement.velocity, state.point_velocity, held_layer, held_layer)
     masses = RigidMotion(mass_unit, movement.mass_velocity, state.mass_velocity, problem.masses, problem.buoyant_masses)
@@ -153,13 +158,6 @@ def _prepare_hinges(movement: Movement, state: FlowState, problem: Problem, dt: 
     )
     movement.mass_unit = mass_unit
     movement._base_velocity, movement._base_mass_velocity = movement.velocity, movement.mass_velocity
-
-
-def _unit(rig: Rig, configuration: Configuration, flap: int) -> np.ndarray:
-    """Return the velocity of a rig's points per unit opening rate of one flap, all else at rest."""
-    rates = tuple(1.0 if k == flap else 0.0 for k in range(len(configuration.openings)))
-    still = replace(configuration, incidence_rate=0.0, heave_rate=0.0, opening_rates=rates)
-    return rig.place(still).velocities
 
 
 def _base_motion(rig: Rig, configuration: Configuration) -> np.ndarray:
@@ -225,7 +223,9 @@ def end_step(
         middle, mean_rate = 0.5 * (before[k] + opening), 0.5 * (before_rates[k] + rate)
         spring = -flap.spring * (middle - flap.rest) - flap.damping * mean_rate if flap.free else 0.0
         driver = 0.0 if flap.free else float(inertia[k] - fluid_torques[k])
-        energy = _kinetic_energy(problem, movement, k) + (0.5 * flap.spring * (opening - flap.rest) ** 2 if flap.free else 0.0)
+        energy = _kinetic_energy(problem, movement, k) + (
+            0.5 * flap.spring * (opening - flap.rest) ** 2 if flap.free else 0.0
+        )
         reports.append(
             FlapReport(opening, rate, fluid_torques[k], spring, float(stops[k]), driver, driver * mean_rate, energy)
         )
@@ -236,16 +236,14 @@ def end_step(
     return tuple(reports)
 
 
-def _inertial_torques(
-    state: FlowState, problem: Problem, movement: Movement, dt: float, pull: float
-) -> np.ndarray:
+def _inertial_torques(state: FlowState, problem: Problem, movement: Movement, dt: float, pull: float) -> np.ndarray:
     """Return the torque that each flap's own mass asks for, less its weight, shape (flaps,)."""
     count = len(problem.mechanics)
     if not problem.masses.any():
         return np.zeros(count)
     acceleration = (movement.mass_velocity - state.mass_velocity) / dt - np.array([pull, 0.0])
     load = problem.masses[:, None] * acceleration - problem.buoyant_masses[:, None] * problem.gravity
-    return np.array([np.sum(_unit(problem.mass_rig, movement.configuration, k) * load) for k in range(count)])
+    return np.array([np.sum(problem.mass_rig.per_opening_rate(movement.masses, k) * load) for k in range(count)])
 
 
 def _kinetic_energy(problem: Problem, movement: Movement, flap: int) -> float:

@@ -54,7 +54,9 @@ def assemble(case: Case, rig: Rig | None = None) -> Problem:
     tow = tow_law(case.tow, case.run.travel)
     mechanics = mechanics_of(case, rig)
     bare = mass_rig(rig)
-    steps = StepRule(courant, grid.spacing, reynolds, explicit, case.run.fixed_step, longest_for_springs(mechanics, rig))
+    steps = StepRule(
+        courant, grid.spacing, reynolds, explicit, case.run.fixed_step, longest_for_springs(mechanics, rig)
+    )
     require_resolvable_springs(steps, mechanics, rig)
     problem = Problem(
         grid=grid,

@@ -85,4 +85,3 @@ def extent(case: Case) -> tuple[float, float, float, float]:
     below = next(d for d in (tank.wall_below, domain.below, domain.lateral) if d is not None)
     above = next(d for d in (tank.wall_above, domain.above, domain.lateral) if d is not None)
     return (-domain.upstream, domain.downstream, -below, above)
-

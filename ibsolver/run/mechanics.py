@@ -30,7 +30,9 @@ def _mechanics(case: Case, flap: Flap) -> Mechanics:
     damping_scale = scales.damping_scale(case)
     if mass_scale is None or spring_scale is None or damping_scale is None:
         problem = "a free flap needs a fluid, a chord, a span and a speed, for its mass and spring have units."
-        raise CaseError([Fault(case.file or "case", 0, f"flap {flap.name}", "", problem, "Add [fluid], chord and span.")])
+        raise CaseError(
+            [Fault(case.file or "case", 0, f"flap {flap.name}", "", problem, "Add [fluid], chord and span.")]
+        )
     per_area, displaced = _masses(case, flap)
     return Mechanics(
         "free",

@@ -56,8 +56,8 @@ def write_checkpoint(
         "turn": turn,
         "physics_hash": physics_hash,
         "numbers": json.dumps(dict(numbers)),
-        "arrays_sha256": _digest(arrays),
     }
+    attributes["sha256"] = _digest(arrays, attributes)
     data = hdf5.image(dict(arrays), attributes, {}, compress=False)
     write_bytes(Path(directory) / name, data)
     return name, hashlib.sha256(data).hexdigest()
@@ -98,7 +98,7 @@ def _read(path: Path, physics_hash: str | None) -> tuple[int, Checkpoint]:
     arrays, attributes = hdf5.contents(path)
     if attributes.get("schema") != SCHEMA:
         raise StorageError(f"{path}: written with schema {attributes.get('schema')!r}; this version reads {SCHEMA}.")
-    if attributes.get("arrays_sha256") != _digest(arrays):
+    if attributes.get("sha256") != _digest(arrays, attributes):
         raise StorageError(f"{path}: damaged, its checksum does not match its contents.")
     if physics_hash is not None and attributes.get("physics_hash") != physics_hash:
         raise StorageError(f"{path}: belongs to another case.")
@@ -109,9 +109,11 @@ def _read(path: Path, physics_hash: str | None) -> tuple[int, Checkpoint]:
         raise StorageError(f"{path}: damaged, its numbers cannot be read.") from None
 
 
-def _digest(arrays: Mapping[str, np.ndarray]) -> str:
-    """Return the sha256 over names, shapes and bytes of all arrays."""
+def _digest(arrays: Mapping[str, np.ndarray], attributes: Mapping[str, Any]) -> str:
+    """Return the sha256 over the numbers, and over names, shapes and bytes of all arrays."""
     digest = hashlib.sha256()
+    for name in ("turn", "physics_hash", "numbers"):
+        digest.update(f"{name}={attributes.get(name)}\n".encode("utf-8", "replace"))
     for name in sorted(arrays):
         array = np.ascontiguousarray(arrays[name])
         digest.update(f"{name}{array.dtype.str}{array.shape}".encode())

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from pathlib import Path
@@ -84,15 +85,45 @@ def read_frame(path: Path | str) -> Frame:
         raise StorageError(
             f"{path}: written with frame schema {attributes.get('schema')!r}; this version reads {SCHEMA}."
         )
-    if not all(isinstance(attributes.get(name), (int, float)) for name in ("time", "travel")):
-        raise StorageError(f"{path}: damaged, its time or travel is missing.")
+    _moment(attributes, path)
     prefix = SHAPES_GROUP + "/"
     shapes = {name[len(prefix) :]: array for name, array in datasets.items() if name.startswith(prefix)}
     _check_shapes(datasets, path)
+    _check_geometry(datasets, shapes, path)
     for array in datasets.values():
         array.flags.writeable = False
     fields = {dataset.name: datasets[dataset.name] for dataset in FRAME_DATASETS}
     return Frame(**fields, shapes=shapes, attributes=attributes)
+
+
+def read_moment(path: Path | str) -> tuple[float, float]:
+    """Return (time, travel) of a frame without unpacking its arrays.
+
+    Raises
+    ------
+    StorageError
+        If the file is damaged, or its time or travel is missing.
+    """
+    return _moment(hdf5.attributes(path), path)
+
+
+def _moment(attributes: Mapping[str, Any], path: Path | str) -> tuple[float, float]:
+    values = [attributes.get(name) for name in ("time", "travel")]
+    if not all(isinstance(value, (int, float)) and math.isfinite(value) for value in values):
+        raise StorageError(f"{path}: damaged, its time or travel is missing.")
+    return float(values[0]), float(values[1])
+
+
+def _check_geometry(
+    datasets: Mapping[str, np.ndarray], shapes: Mapping[str, np.ndarray], path: Path | str
+) -> None:
+    """Refuse grid lines that do not run on, and outlines that are no rows of points."""
+    for name in ("x_faces", "y_faces"):
+        if not (np.diff(datasets[name]) > 0).all():
+            raise StorageError(f"{path}: damaged, {name} does not increase from one to the next.")
+    for name, outline in shapes.items():
+        if outline.ndim != 2 or outline.shape[1] != 2 or not np.isfinite(outline).all():
+            raise StorageError(f"{path}: damaged, the outline of {name} is not a row of points.")
 
 
 def _check_shapes(datasets: Mapping[str, np.ndarray], path: Path | str) -> None:
@@ -100,7 +131,7 @@ def _check_shapes(datasets: Mapping[str, np.ndarray], path: Path | str) -> None:
     missing = [dataset.name for dataset in FRAME_DATASETS if dataset.name not in datasets]
     if missing:
         raise StorageError(f"{path}: damaged, {', '.join(missing)} is missing.")
-    sizes = {"nx": datasets["x_faces"].size - 1, "ny": datasets["y_faces"].size - 1, "n": len(datasets["points"])}
+    sizes = {"nx": datasets["x_faces"].size - 1, "ny": datasets["y_faces"].size - 1, "n": len(np.atleast_1d(datasets["points"]))}
     for dataset in FRAME_DATASETS:
         wanted = tuple(_size(term, sizes) for term in dataset.shape)
         if datasets[dataset.name].shape != wanted:

@@ -6,8 +6,9 @@ taken into memory first, so a damaged file gives an error and not a crash halfwa
 
 from __future__ import annotations
 
+import contextlib
 import io
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from pathlib import Path
 from typing import Any
 
@@ -62,24 +63,44 @@ def contents(path: Path | str) -> tuple[dict[str, np.ndarray], dict[str, Any]]:
     StorageError
         If the file is missing, truncated, damaged, larger than anything we write, or points outside itself.
     """
-    path = Path(path)
-    try:
-        if path.stat().st_size > LARGEST_FILE:
-            raise StorageError(f"{path}: larger than any file of ours.")
-        data = path.read_bytes()
-    except FileNotFoundError:
-        raise StorageError(f"{path}: no such file.") from None
-    except OSError as error:
-        raise storage_error(error, path) from error
+    with _opened(path) as (file, size):
+        datasets: dict[str, np.ndarray] = {}
+        _collect(file, "", datasets, Path(path), [max(SMALL, INFLATION * size)])
+        return datasets, _attributes(file)
+
+
+def attributes(path: Path | str) -> dict[str, Any]:
+    """Return the root attributes of an HDF5 file without unpacking its datasets; errors as in `contents`."""
+    with _opened(path) as (file, _):
+        return _attributes(file)
+
+
+@contextlib.contextmanager
+def _opened(path: Path | str) -> Iterator[tuple[h5py.File, int]]:
+    """Take a file into memory and open it there; gives it with its size in bytes."""
+    data = _read(Path(path))
     try:
         with h5py.File(io.BytesIO(data), "r") as file:
-            datasets: dict[str, np.ndarray] = {}
-            _collect(file, "", datasets, path, [max(SMALL, INFLATION * len(data))])
-            return datasets, {str(name): _plain(value) for name, value in file.attrs.items()}
+            yield file, len(data)
     except StorageError:
         raise
     except Exception as error:  # h5py raises many kinds for a damaged file; all mean the same to the user
         raise StorageError(f"{path}: damaged or not an HDF5 file of ours ({type(error).__name__}).") from None
+
+
+def _read(path: Path) -> bytes:
+    try:
+        if path.stat().st_size > LARGEST_FILE:
+            raise StorageError(f"{path}: larger than any file of ours.")
+        return path.read_bytes()
+    except FileNotFoundError:
+        raise StorageError(f"{path}: no such file.") from None
+    except OSError as error:
+        raise storage_error(error, path) from error
+
+
+def _attributes(file: h5py.File) -> dict[str, Any]:
+    return {str(name): _plain(value) for name, value in file.attrs.items()}
 
 
 def _collect(group: h5py.Group, prefix: str, datasets: dict[str, np.ndarray], path: Path, allowance: list[int]) -> None:
@@ -98,7 +119,7 @@ def _collect(group: h5py.Group, prefix: str, datasets: dict[str, np.ndarray], pa
         allowance[0] -= item.size * item.dtype.itemsize
         if item.dtype.kind not in "fiu" or allowance[0] < 0:
             raise StorageError(f"{path}: {prefix}{name} has shape {item.shape} and type {item.dtype}, which is absurd.")
-        datasets[prefix + name] = item[()]
+        datasets[prefix + name] = np.asarray(item[()])
 
 
 def _plain(value: Any) -> Any:

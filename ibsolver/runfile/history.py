@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import contextlib
 import os
 import time
 from collections.abc import Mapping
@@ -59,16 +60,21 @@ class HistoryWriter:
         Raises
         ------
         StorageError
-            If the disk is full; a torn line may be left, which reading drops.
+            If the disk is full; what was half written is taken back, so that trying again leaves no damaged line.
         """
         text = "".join(self._lines)
+        before = None
         try:
             with open(self.path, "ab") as file:
+                before = file.tell()
                 file.write(text.encode())
                 file.flush()
                 if sync:
                     os.fsync(file.fileno())
         except OSError as error:
+            if before is not None:
+                with contextlib.suppress(OSError):
+                    os.truncate(self.path, before)
             raise storage_error(error, self.path, len(text)) from error
         self._lines.clear()
         self._flushed = time.monotonic()
@@ -134,6 +140,8 @@ def read_history(path: Path | str) -> History:
     for k, line in enumerate(lines[first + 1 :]):
         values = line.split(",")
         try:
+            if len(values) != len(names):
+                raise ValueError
             rows[k] = [float(value) for value in values]
         except ValueError:
             raise StorageError(

@@ -9,10 +9,16 @@ import socket
 import time
 from pathlib import Path
 from types import TracebackType
+from typing import TextIO
 
 from ibsolver.errors import StorageError
 from ibsolver.runfile.atomic import storage_error
 from ibsolver.runfile.layout import LOCK
+
+try:
+    import fcntl
+except ImportError:  # a system without advisory locks: the lock file alone must do
+    fcntl = None  # type: ignore[assignment]
 
 STALE_AFTER = 600.0  # s without a heartbeat, for a writer on another host
 
@@ -22,60 +28,57 @@ class WriterLock:
 
     The lock file names host, process and the process's start, so that a dead writer on this host is recognised at
     once (even where its number was given to another process), and one on another host after ten minutes without a
-    heartbeat.
+    heartbeat. Looking at the file and taking it over happen under an advisory lock of the system, so that of several
+    who find the same dead writer only one goes on.
     """
 
     def __init__(self, directory: Path | str):
         self.path = Path(directory) / LOCK
 
     def __enter__(self) -> WriterLock:
-        for _ in range(3):
+        for _ in range(100):
             try:
-                descriptor = os.open(self.path, os.O_CREAT | os.O_EXCL | os.O_WRONLY, 0o644)
-            except FileExistsError:
-                self._remove_if_stale()
-                continue
+                with open(os.open(self.path, os.O_CREAT | os.O_RDWR, 0o644), "r+", errors="replace") as file:
+                    _guard(file)
+                    if _is_at(file, self.path):
+                        self._take(file)
+                        return self
             except OSError as error:
                 raise storage_error(error, self.path) from error
-            with os.fdopen(descriptor, "w") as file:
-                json.dump(_identity(), file)
-            return self
-        raise StorageError(f"{self.path}: another process keeps taking this run directory.")
+        raise StorageError(f"{self.path}: other processes keep taking this run directory. Wait for them, then try again.")
 
     def __exit__(
         self, kind: type[BaseException] | None, error: BaseException | None, trace: TracebackType | None
     ) -> None:
-        with contextlib.suppress(OSError):
-            self.path.unlink()
+        with contextlib.suppress(OSError), open(self.path, errors="replace") as file:
+            _guard(file)
+            if _is_at(file, self.path) and _holder(file.read()) == _identity():
+                self.path.unlink()
 
     def heartbeat(self) -> None:
         """Show that the writer lives."""
         with contextlib.suppress(OSError):
             os.utime(self.path)
 
-    def _remove_if_stale(self) -> None:
-        """Remove a dead writer's lock.
+    def _take(self, file: TextIO) -> None:
+        """Write our name into the guarded lock file.
 
         Raises
         ------
         StorageError
-            If the writer lives, naming it.
+            If a writer lives, naming it.
         """
-        try:
-            age = time.time() - self.path.stat().st_mtime
-            holder = json.loads(self.path.read_text())
-        except FileNotFoundError:
-            return
-        except (OSError, ValueError):
-            holder, age = {}, time.time() - self.path.stat().st_mtime if self.path.exists() else 0.0
-        if _dead(holder, age):
-            with contextlib.suppress(OSError):
-                self.path.unlink()
-            return
-        raise StorageError(
-            f"{self.path.parent}: process {holder.get('pid')} on {holder.get('host')} is writing this run (sign of life "
-            f"{age:.0f} s ago). Wait for it, stop it, or choose another folder; if it is surely gone, delete {self.path.name}."
-        )
+        text, age = file.read(), time.time() - os.fstat(file.fileno()).st_mtime
+        holder = _holder(text)
+        if text and not _dead(holder, age):
+            raise StorageError(
+                f"{self.path.parent}: process {holder.get('pid')} on {holder.get('host')} is writing this run (sign of "
+                f"life {age:.0f} s ago). Wait for it, stop it, or choose another folder; if it is surely gone, delete "
+                f"{self.path.name}."
+            )
+        file.seek(0)
+        file.truncate()
+        json.dump(_identity(), file)
 
 
 def writer_alive(directory: Path | str) -> bool:
@@ -83,11 +86,35 @@ def writer_alive(directory: Path | str) -> bool:
     path = Path(directory) / LOCK
     try:
         age = time.time() - path.stat().st_mtime
-        return not _dead(json.loads(path.read_text()), age)
+        return not _dead(_holder(path.read_text(errors="replace")), age)
     except FileNotFoundError:
         return False
-    except (OSError, ValueError):
+    except OSError:
         return True
+
+
+def _guard(file: TextIO) -> None:
+    """Hold a file against everyone else who asks, until it is closed or this process ends."""
+    if fcntl is not None:
+        with contextlib.suppress(OSError):  # a file system without such locks
+            fcntl.flock(file, fcntl.LOCK_EX)
+
+
+def _is_at(file: TextIO, path: Path) -> bool:
+    """Return whether an open file is still the one that a path names."""
+    try:
+        return os.path.samestat(os.fstat(file.fileno()), os.stat(path))
+    except FileNotFoundError:
+        return False
+
+
+def _holder(text: str) -> dict[str, object]:
+    """Return what a lock file says of its writer; nothing where it is damaged."""
+    try:
+        holder = json.loads(text)
+    except (ValueError, RecursionError):
+        return {}
+    return holder if isinstance(holder, dict) else {}
 
 
 def _identity() -> dict[str, object]:
@@ -106,7 +133,7 @@ def _dead(holder: dict[str, object], age: float) -> bool:
     if holder.get("host") != socket.gethostname():
         return age > STALE_AFTER
     pid = holder.get("pid")
-    if not isinstance(pid, int):
+    if not isinstance(pid, int) or not 0 < pid < 1 << 31:
         return age > 5.0
     try:
         os.kill(pid, 0)

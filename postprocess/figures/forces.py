@@ -16,8 +16,8 @@ LOADS = (
     ("CL", "lift_mN", "lift coefficient $C_L$", "lift (mN)", style.LIFT),
     ("CD", "drag_mN", "drag coefficient $C_D$", "drag (mN)", style.DRAG),
 )
-SHORT_SHARE = 0.01  # a spike that lasts less than this share of the record does not set the scale,
-SPIKE = 1.35  # unless the rest fills the panel to within this factor of it
+SHORT_SHARE = 0.01  # a spike narrower than this share of the panel does not set the scale,
+SPIKE = 1.35  # unless the rest needs a panel almost as high: less than this factor lower
 STANDSTILL = 0.05  # with more of the time at rest than this, loads are drawn against time
 
 
@@ -42,21 +42,22 @@ def draw_forces(table: Table, info: dict[str, Any], path: Path | str, *, filtere
     stops or returns), since the curve would fold onto itself.
     """
     by_travel = grows(table)
+    unit = f"{info.get('length_word', 'chord')}s" if by_travel else "c/U"
     angles = moving_angles(table, info.get("flaps", ()))
     tow = "tow_speed" in table and np.ptp(table["tow_speed"]) > 1e-6
     heights = [3.0, 2.4] + [1.3] * bool(angles) + [0.42] * bool(tow)
     with style.style():
         figure = style.new_figure(7.2, 2.0 + 0.82 * sum(heights))
         axes = figure.subplots(len(heights), 1, sharex=True, height_ratios=heights)
-        for ax, (name, newtons, label, unit, colour) in zip(axes, LOADS, strict=False):
-            _coefficient(ax, table, filtered, name, by_travel, label, colour)
+        for ax, (name, newtons, label, newtons_label, colour) in zip(axes, LOADS, strict=False):
+            _coefficient(ax, table, filtered, name, by_travel, unit, label, colour)
             if newtons in table:
-                _millinewtons(ax, table, name, newtons, by_travel, unit)
+                _millinewtons(ax, table, name, newtons, by_travel, newtons_label)
         if angles:
             _angles(axes[2], table, angles, by_travel)
         if tow:
             _tow_speed(axes[-1], table, by_travel)
-        _abscissae(axes, table, by_travel, info.get("length_word", "chord"))
+        _abscissae(axes, table, by_travel, unit)
         style.put_heading(figure, style.heading(info))
         style.put_small_print(figure, info.get("caution", ""))
         figure.align_ylabels(axes)
@@ -79,24 +80,24 @@ def moving_angles(table: Table, flaps: tuple[str, ...] | list[str]) -> dict[str,
     return {column: word for column, word in columns.items() if column in table and np.ptp(table[column]) > 1e-6}
 
 
-def load_limits(value: np.ndarray, time: np.ndarray) -> tuple[float, float, int | None]:
-    """Return limits that a short spike does not spoil, and the index of the peak left out if there is one.
+def load_limits(value: np.ndarray, x: np.ndarray) -> tuple[float, float, int | None]:
+    """Return limits that a narrow spike does not spoil, and the index of the peak left out if there is one.
 
-    Steps count by the time they last, since a run takes its shortest steps where the load is largest.
+    Steps count by the width they take in the panel, since a run takes its shortest steps where the load is largest.
 
     Parameters
     ----------
-    value, time : ndarray, shape (steps,)
-        Load and time, in any units.
+    value, x : ndarray, shape (steps,)
+        Load and abscissa, in any units.
     """
     index = np.flatnonzero(np.isfinite(value))
     if index.size == 0:
         return -1.0, 1.0, None
     order = index[np.argsort(value[index], kind="stable")]
-    share = np.cumsum(np.gradient(time)[order] if time.size > 1 else np.ones(1))
-    share = share / share[-1]
-    low = min(value[order[np.searchsorted(share, SHORT_SHARE)]], 0.0)
-    high = max(value[order[min(np.searchsorted(share, 1.0 - SHORT_SHARE), order.size - 1)]], 0.0)
+    width = np.abs(np.gradient(x))[order] if x.size > 1 else np.ones(1)
+    share = np.cumsum(width) / width.sum() if width.sum() > 0 else np.linspace(0.0, 1.0, order.size)
+    first, last = np.searchsorted(share, [SHORT_SHARE, 1.0 - SHORT_SHARE])
+    low, high = min(value[order[first]], 0.0), max(value[order[min(last, order.size - 1)]], 0.0)
     least, most = min(value[order[0]], 0.0), max(value[order[-1]], 0.0)
     if most - least <= SPIKE * (high - low) or high == low:
         low, high = least, most
@@ -111,7 +112,7 @@ def _x(table: Table, by_travel: bool) -> np.ndarray:
 
 
 def _coefficient(
-    ax: Axes, table: Table, filtered: Table | None, name: str, by_travel: bool, label: str, colour: str
+    ax: Axes, table: Table, filtered: Table | None, name: str, by_travel: bool, unit: str, label: str, colour: str
 ) -> None:
     x, value = _x(table, by_travel), table[name]
     ax.axhline(0, color=style.FAINT, lw=0.6, zorder=0)
@@ -124,18 +125,18 @@ def _coefficient(
         # Over the solid line, not under it: where the two agree, dashes inside the line are what shows it.
         balance = table[f"{name}_momentum"]
         ax.plot(x, balance, color=style.INK, lw=0.8, ls=(0, (5, 4)), label="momentum balance", zorder=3)
-    low, high, peak = load_limits(value, table["time"])
+    low, high, peak = load_limits(value, x)
     ax.set_ylim(low, high + 0.13 * (high - low))  # a strip on top for legend and note
     ax.set_ylabel(label)
     if peak is not None:
-        _note_peak(ax, x[peak], value[peak], "chords" if by_travel else "c/U")
+        _note_peak(ax, x[peak], value[peak], unit)
     ax.legend(loc="upper right", ncols=3, handlelength=2.6, borderaxespad=0.25)
 
 
 def _note_peak(ax: Axes, x: float, value: float, unit: str) -> None:
     """Say that a spike leaves the panel, how high it is and where."""
     ax.text(
-        0.012, 0.97, f"cut off: {value:.3g} at {x:.2g} {unit}", transform=ax.transAxes, va="top", fontsize=8,
+        0.012, 0.97, f"peak {value:.3g} at {x:.2g} {unit}, outside", transform=ax.transAxes, va="top", fontsize=8,
         zorder=6, bbox={"boxstyle": "round,pad=0.15", "fc": "white", "ec": "none", "alpha": 0.85},
     )  # fmt: skip
     edge, marker = (1.0, "^") if value > 0 else (0.0, "v")
@@ -149,8 +150,9 @@ def _millinewtons(ax: Axes, table: Table, name: str, newtons: str, by_travel: bo
         ax.secondary_yaxis("right", functions=(lambda c: c * factor, lambda f: f / factor)).set_ylabel(label)
         return
     right = ax.twinx()
-    right.plot(_x(table, by_travel), table[newtons], color=style.FOURTH, lw=1.2, ls="-.")
-    low, high, _ = load_limits(table[newtons], table["time"])
+    x = _x(table, by_travel)
+    right.plot(x, table[newtons], color=style.FOURTH, lw=1.2, ls="-.")
+    low, high, _ = load_limits(table[newtons], x)
     right.set_ylim(low, high + 0.13 * (high - low))
     right.set_ylabel(f"{label}, dash-dotted", color=style.FOURTH)
     right.tick_params(axis="y", colors=style.FOURTH)
@@ -173,8 +175,9 @@ def _angles(ax: Axes, table: Table, columns: dict[str, str], by_travel: bool) ->
         colour, dash = looks[k % len(looks)]
         ax.plot(_x(table, by_travel), table[column], color=colour, ls=dash, label=word)
     ax.set_ylabel("angle (deg)")
-    ax.margins(y=0.12)
-    ax.legend(loc="best", ncols=3)
+    low, high = ax.get_ylim()
+    ax.set_ylim(low, high + 0.35 * (high - low))
+    ax.legend(loc="upper right", ncols=3, borderaxespad=0.25)
 
 
 def _tow_speed(ax: Axes, table: Table, by_travel: bool) -> None:
@@ -188,10 +191,10 @@ def _tow_speed(ax: Axes, table: Table, by_travel: bool) -> None:
     ax.set_ylabel("tow (U)")
 
 
-def _abscissae(axes: np.ndarray, table: Table, by_travel: bool, length_word: str) -> None:
+def _abscissae(axes: np.ndarray, table: Table, by_travel: bool, unit: str) -> None:
     """Label the abscissa and add one in seconds where the run has them."""
     x, seconds = _x(table, by_travel), table["time_s"]
-    axes[-1].set_xlabel(f"travel ({length_word}s)" if by_travel else "time (c/U)")
+    axes[-1].set_xlabel(f"{'travel' if by_travel else 'time'} ({unit})")
     axes[-1].set_xlim(min(0.0, float(x[0])), float(x[-1]) if x[-1] > x[0] else None)
     if np.isfinite(seconds).all():
         rising = np.concatenate([[x[0] > 0], np.diff(x) > 0])

@@ -24,7 +24,7 @@ QUIET = "#5a6069"  # small print: grey, and still above a contrast of 6 to 1 on 
 FAINT = "#8b9099"  # lines only, never letters
 GRID = "#b9bec6"
 # Of middling lightness, so that thin dark dashes inside a curve are seen; apart in hue and in lightness.
-LIFT, DRAG, THIRD, FOURTH = "#2f86bb", "#cf6f2e", "#4f7a1f", "#6d4c8f"
+LIFT, DRAG, THIRD, FOURTH = "#2f86bb", "#cf6f2e", "#1f5c3a", "#4a2d63"
 BODY = "#14161a"
 
 # Clockwise rotation deep teal, counter-clockwise rust, nothing white: the lightness falls equally on both sides.
@@ -63,6 +63,7 @@ def new_figure(width: float, height: float, layout: str = "constrained") -> Figu
     """Return an empty figure of a size in inches, drawn without any window system."""
     figure = Figure(figsize=(width, height), dpi=DPI, layout=layout)
     FigureCanvasAgg(figure)
+    figure.get_layout_engine().set(w_pad=0.08, h_pad=0.05)  # inches; less, and panels of equal scale push labels out
     return figure
 
 

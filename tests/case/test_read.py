@@ -151,7 +151,7 @@ def test_the_error_message_is_all_faults_one_a_line():
          "case.toml:4: tow.reynolds = true: must be a number, at least 0.01 and at most 20000. "
          "Write for example 1200."),
         (BARE + 'start = "smoth"\n',
-         'case.toml:5: tow.start = "smoth": must be one of "impulsive", "linear", "smooth", "hold acceleration". '
+         'case.toml:5: tow.start = "smoth": must be one of "impulsive", "linear", "smooth", "hold acceleration", "still". '
          'Did you mean "smooth"?'),
         (BARE + "[grid]\nuniform = 'yes'\n",
          'case.toml:6: grid.uniform = "yes": must be true or false, without quotes. Write false.'),

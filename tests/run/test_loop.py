@@ -19,7 +19,7 @@ from ibsolver.errors import CaseError, DivergedError, InterruptedRun, StorageErr
 from ibsolver.run.loop import resume_case, run_case
 from ibsolver.runfile.frame import read_frame
 from ibsolver.runfile.history import read_history
-from tests.runs import write_case
+from tests.runs import SMALL_CASE, write_case
 
 CONTRACT_COLUMNS = (
     "step, time_s, time, travel, tow_speed, incidence_deg, CL, CD, CM, CL_momentum, CD_momentum, courant, slip, "
@@ -167,10 +167,19 @@ def test_one_and_two_threads_agree(case, tmp_path):
         np.testing.assert_allclose(histories[0][name], histories[1][name], rtol=1e-12, atol=1e-12)
 
 
-def test_what_moves_is_refused_with_a_sentence(case, tmp_path):
-    flap = dataclasses.replace(case.flaps[0], mount="free")
-    with pytest.raises(CaseError, match="'front' is free"):
-        run_case(dataclasses.replace(case, flaps=(flap,)), tmp_path / "run")
+def test_a_free_flap_is_recorded_and_resumes_to_the_same_bits(tmp_path):
+    free = 'mount = "free"\nmass_per_area = "0.5 kg/m2"\nlimits = ["5 deg", "80 deg"]'
+    text = SMALL_CASE.replace('mount = "fixed"', free)
+    case = load_case(str(write_case(tmp_path, text)))
+    run_case(case, tmp_path / "whole")
+    with pytest.raises(InterruptedRun):
+        run_case(case, tmp_path / "cut", progress=stop_at(37, signal.SIGTERM))
+    resume_case(tmp_path / "cut")
+    assert (tmp_path / "cut" / "history.csv").read_bytes() == (tmp_path / "whole" / "history.csv").read_bytes()
+    history = read_history(tmp_path / "whole" / "history.csv")
+    for name in ("opening_deg", "opening_rate", "CH", "CH_spring", "CH_stop", "power", "energy"):
+        assert np.isfinite(history[f"{name}_front"]).all()
+    assert np.ptp(history["opening_deg_front"]) > 0.1
 
 
 def test_the_package_itself_runs_a_case(case, tmp_path):

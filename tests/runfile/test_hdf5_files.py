@@ -10,7 +10,7 @@ from hypothesis import strategies as st
 
 from ibsolver.errors import StorageError
 from ibsolver.runfile.checkpoint import read_latest, write_checkpoint
-from ibsolver.runfile.frame import read_frame, write_frame
+from ibsolver.runfile.frame import read_frame, read_moment, write_frame
 
 RNG = np.random.default_rng(0)
 STATE = {"u": RNG.standard_normal((5, 6)), "force": RNG.standard_normal((3, 2))}
@@ -101,8 +101,82 @@ def test_truncated_or_flipped_checkpoints_are_never_taken_for_whole(tmp_path, wh
     except StorageError as error:
         assert "checkpoint-b.h5" in str(error)
     else:
+        assert latest.numbers == NUMBERS
         for name, array in STATE.items():
             assert (latest.arrays[name] == array).all()
+
+
+@pytest.mark.parametrize(("old", "new"), [(b'"step": 7', b'"step": 5'), (b"0.30000000000000004", b"0.30000000000000064")])
+def test_a_changed_number_in_a_checkpoint_is_damage(tmp_path, old, new):
+    """The checksum covers step and time as well as the arrays."""
+    path = tmp_path / write_checkpoint(tmp_path, 1, STATE, NUMBERS, "abc")[0]
+    assert path.read_bytes().count(old) == 1
+    path.write_bytes(path.read_bytes().replace(old, new))
+    with pytest.raises(StorageError, match=r"checkpoint-b\.h5: damaged, its checksum"):
+        read_latest(tmp_path)
+
+
+def _scalar(file):
+    del file["points"]
+    file["points"] = 1.0
+
+
+def _flat_outline(file):
+    del file["shapes/plate"]
+    file["shapes/plate"] = np.zeros(4)
+
+
+def _faces_back(file):
+    file["x_faces"][3] = -9.0
+
+
+def _no_number(file):
+    file["y_faces"][3] = np.nan
+
+
+def _time_is_nan(file):
+    file.attrs["time"] = np.nan
+
+
+def _in_itself(file):
+    for k in range(14):
+        file[f"again{k}"] = file["/"]
+
+
+@pytest.mark.parametrize(
+    ("change", "words"),
+    [
+        (_scalar, "points has shape"),
+        (_flat_outline, "the outline of plate is not a row of points"),
+        (_faces_back, "x_faces does not increase"),
+        (_no_number, "y_faces does not increase"),
+        (_time_is_nan, "its time or travel is missing"),
+        (_in_itself, "more groups than any file of ours"),
+    ],
+)
+def test_frames_of_another_making_are_sentences(tmp_path, change, words):
+    path = make_frame(tmp_path / "f.h5")
+    with h5py.File(path, "a") as file:
+        change(file)
+    with pytest.raises(StorageError, match=words):
+        read_frame(path)
+
+
+def test_a_further_single_number_does_no_harm(tmp_path):
+    path = make_frame(tmp_path / "f.h5")
+    with h5py.File(path, "a") as file:
+        file["remark"] = 1.0
+    assert read_frame(path).travel == 1.25
+
+
+def test_the_moment_of_a_frame_is_read_without_its_arrays(tmp_path):
+    path = make_frame(tmp_path / "f.h5")
+    assert read_moment(path) == (1.5, 1.25)
+    path.write_bytes(path.read_bytes()[:3000])
+    with pytest.raises(StorageError, match="damaged"):
+        read_moment(path)
+    with pytest.raises(StorageError, match="no such file"):
+        read_moment(tmp_path / "g.h5")
 
 
 def test_links_and_virtual_datasets_are_refused(tmp_path):
