@@ -110,6 +110,7 @@ def draw(case: Any, problem: Any, target: Path) -> Path:
         "tow_speeds": np.array([problem.tow_speed(t) for t in times]),
         "tow_seconds": None if seconds is None else times * seconds,
         "notes": notes,
+        "length_word": "diameter" if case.cylinder is not None else "chord",
     }
     return draw_case(picture, target)
 

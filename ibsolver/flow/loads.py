@@ -3,7 +3,7 @@
 A point pushes the fluid with q (per unit span); the body feels -q. In the accelerating frame the fluid inside a
 closed body is carried along by the frame, and the points hold it, so the hydrodynamic force of a closed body is
 -sum q - A dU/dt, A its area: what a balance reads after the body's own inertia is taken off. A regularised thin plate
-holds a layer of fluid 1.57 cells thick in the same way (`ibsolver.body.points.HELD_LAYER`), and its points feel that
+holds a layer of fluid one to two cells thick in the same way (`ibsolver.body.regularisation`), and its points feel that
 layer's inertia too; it is taken off point by point, so that the load of an accelerating plate converges with the cells.
 """
 

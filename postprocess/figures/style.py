@@ -91,7 +91,7 @@ def heading(info: dict[str, Any]) -> str:
 
 def put_heading(figure: Figure, text: str) -> None:
     """Put a title over the figure, broken into as many lines as the width asks for."""
-    figure.suptitle(fitted(figure, text, 10), fontsize=10, x=0.01, ha="left")
+    figure.suptitle(fitted(figure, text, 10), fontsize=10, x=0.01, ha="left", parse_math=False)
 
 
 def put_small_print(figure: Figure, text: str) -> None:

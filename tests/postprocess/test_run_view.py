@@ -91,3 +91,11 @@ def test_drawing_needs_no_window_system(small_run, tmp_path):
         "assert 'matplotlib.pyplot' not in sys.modules and 'numba' not in sys.modules"
     )
     subprocess.run([sys.executable, "-c", code, str(small_run), str(tmp_path / "w.png")], check=True)
+
+
+def test_a_title_with_a_dollar_sign_is_no_formula(small_run, tmp_path):
+    from postprocess.figures.vorticity import draw_vorticity
+
+    frame = postprocess.open_run(small_run).frame(-1)
+    info = {"title": r"Plate of 5 $\frac alloy", "reynolds": 300.0, "length_word": "chord"}
+    assert draw_vorticity([frame], info, tmp_path / "w.png").exists()
