@@ -27,7 +27,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--cutoff", type=float, metavar="F", help="the same in U/c, for dimensionless runs")
     parser.add_argument("--order", type=int, default=4, metavar="N", help="order of the filter, 1 to 10 (default: 4)")
     parser.add_argument(
-        "--filter", default="butterworth", metavar="KIND", help="butterworth, bessel or "moving average" (default: butterworth)"
+        "--filter", default="butterworth", metavar="KIND", help="butterworth, bessel or 'moving average' (default: butterworth)"
     )
     parser.add_argument(
         "--causal", action="store_true", help="run the filter once, with its delay (default: zero phase)"
