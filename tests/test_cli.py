@@ -99,7 +99,7 @@ def test_new_check_run_forces_picture(tmp_path):
     result = json.loads(ran.stdout)
     assert result["state"] == "finished" and result["directory"] == "runs/small"
     assert {Path(f).name for f in result["files"]} == {"forces.csv", "forces.png", "vorticity.png"}
-    assert "C_L" in ran.stderr and "left" in ran.stderr
+    assert "C_L" in ran.stderr and "time left" in ran.stderr
 
     again = ibsolver("run", case, cwd=tmp_path)
     assert again.returncode == 5 and "not overwritten" in again.stderr

@@ -51,6 +51,14 @@ def greatest_acceleration(case: Case) -> float:
     return GREATEST_OVER_MEAN[tow.start] / scales.ramp_time(case)
 
 
+def starting_time(case: Case) -> float:
+    """Return how long the start lasts (c/U); of an encoder's record until it first reaches 99 % of the final speed."""
+    if not case.tow.profile:
+        return scales.ramp_time(case)
+    final = case.tow.profile[-1][1]
+    return next(time for time, speed in case.tow.profile if speed >= 0.99 * final)
+
+
 def added_mass_coefficient(case: Case) -> float | None:
     """Return the peak normal-force coefficient of the added mass while starting, None without a plate.
 
@@ -107,7 +115,7 @@ def tank_numbers(case: Case) -> TankNumbers:
         return TankNumbers(*[None] * 11)
     band, added = normal_force_band(case), added_mass_coefficient(case)
     highest = highest_frequency(case) / seconds
-    start = scales.ramp_time(case) * seconds
+    start = starting_time(case) * seconds
     return TankNumbers(
         convective_time=seconds,
         tow_time=scales.duration(case) * seconds,
@@ -127,7 +135,7 @@ def highest_frequency(case: Case) -> float:
     """Return the highest frequency of interest (U/c), see `TankNumbers`."""
     height = max(math.sin(greatest_incidence(case)), 0.1) if case.cylinder is None else 1.0
     shedding = 5 * 0.2 / height
-    ramp = scales.ramp_time(case)
+    ramp = starting_time(case)
     return max(shedding, 1.0 / ramp if ramp > 0 else 0.0)
 
 

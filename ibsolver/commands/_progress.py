@@ -51,14 +51,14 @@ def sentence(report: Any) -> str:
     share = 100.0 * min(report.travel / report.travel_end, 1.0)
     return (
         f"travel {report.travel:7.3f} of {report.travel_end:g} chords ({share:3.0f} %)   C_L {report.lift:7.3f}   "
-        f"C_D {report.drag:7.3f}   Courant {report.courant:.2f}   {duration(report.seconds_left)} left"
+        f"C_D {report.drag:7.3f}   Courant {report.courant:.2f}   time left {duration(report.seconds_left)}"
     )
 
 
 def duration(seconds: float) -> str:
     """Return a wall time in words short enough for a line."""
     if not seconds < 1e8:
-        return "?"
+        return "unknown yet"
     if seconds < 100:
         return f"{seconds:.0f} s"
     if seconds < 6000:

@@ -304,24 +304,31 @@ def _close(
     facts: dict[str, Any],
     cost: dict[str, float],
 ) -> None:
-    """Write the last words of a run; on a full disk keep silent about what cannot be written."""
-    try:
-        recorder.history.flush(sync=True)
-        recorder.status(name, state, {"seconds_left": 0.0 if name == "finished" else math.nan, **facts})
-        recorder.manifest(
-            threads=threads,
-            threading_layer=_jit.threading_layer(),
-            state=name,
-            steps=state.step,
-            cells=problem.grid.cells,
-            nx=problem.grid.nx,
-            ny=problem.grid.ny,
-            points=problem.rig.size,
-            poisson=problem.poisson.plan,
-            explicit_diffusion=problem.rule.explicit,
-            **cost,
-        )
-        recorder.log.write(name, step=state.step, travel=state.travel, **facts)
-    except StorageError:
-        if name != "storage full":
-            raise
+    """Write the last words of a run, each by itself: on a full disk the shorter ones may still find room."""
+    left = 0.0 if name == "finished" else math.nan
+    machine = {
+        "threads": threads,
+        "threading_layer": _jit.threading_layer(),
+        "state": name,
+        "steps": state.step,
+        "cells": problem.grid.cells,
+        "nx": problem.grid.nx,
+        "ny": problem.grid.ny,
+        "points": problem.rig.size,
+        "poisson": problem.poisson.plan,
+        "explicit_diffusion": problem.rule.explicit,
+    }
+    last_words: tuple[Callable[[], None], ...] = (
+        lambda: recorder.status(name, state, {"seconds_left": left, **facts}),
+        lambda: recorder.history.flush(sync=True),
+        lambda: recorder.manifest(**machine, **cost),
+        lambda: recorder.log.write(name, step=state.step, travel=state.travel, **facts),
+    )
+    trouble: StorageError | None = None
+    for say in last_words:
+        try:
+            say()
+        except StorageError as error:
+            trouble = trouble or error
+    if trouble is not None and name != "storage full":
+        raise trouble

@@ -46,7 +46,7 @@ def present_status(directory: Path | str) -> dict[str, Any]:
     status = read_status(directory)
     if status.get("state") == "running" and not writer_alive(directory):
         status["state"] = "gone"
-        status["message"] = "The process that wrote this run is no more; it left no word (power cut, kill?)."
+        status["message"] = "The process that wrote this run is no more; it left no word (power cut, kill, full disk?)."
     return status
 
 

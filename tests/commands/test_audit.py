@@ -74,3 +74,12 @@ def test_balance_rules_are_multiples_of_the_highest_frequency():
 def test_a_dimensionless_case_has_no_tank_numbers():
     numbers = _audit.tank_numbers(read_case_text('[plate]\nincidence = "18 deg"\n[tow]\nreynolds = 500\n'))
     assert numbers.force_scale is None and numbers.tow_length is None
+
+
+def test_the_start_of_a_recorded_tow_ends_at_99_percent_of_its_speed():
+    import dataclasses
+
+    profile = ((0.0, 0.0), (1.0, 0.5), (2.0, 0.995), (30.0, 1.0))
+    plain = case()
+    recorded = dataclasses.replace(plain, tow=dataclasses.replace(plain.tow, profile=profile))
+    assert _audit.starting_time(recorded) == 2.0
