@@ -44,6 +44,7 @@ def march(case: Case, until: float, disturb=None) -> March:
     """March a case to a time; `disturb(problem, state)` may change the start field."""
     with _jit.one_blas_thread():
         problem = assemble(case)
+        _jit.set_threads(_jit.sensible_threads(problem.grid.cells))
         state = start_state(case, problem)
         if disturb is not None:
             disturb(problem, state)
@@ -53,4 +54,5 @@ def march(case: Case, until: float, disturb=None) -> March:
             assert not report.trouble, report.trouble
             times.append(state.time)
             reports.append(report)
+    _jit.set_threads(None)
     return March(problem, state, np.array(times), reports)

@@ -19,10 +19,10 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-from scipy.linalg import cho_factor, cho_solve
 
 from ibsolver.body.points import BodyError
 from ibsolver.flow.boundary import BoundaryConditions
+from ibsolver.flow.factor import CouplingFactor
 from ibsolver.flow.lattice import projected_response
 from ibsolver.flow.poisson import PoissonSolver
 from ibsolver.grid.staggered import StaggeredGrid
@@ -31,7 +31,6 @@ from ibsolver.kernels import delta, momentum
 
 KERNELS = {"roma": delta.ROMA, "quintic": delta.QUINTIC}
 TABLE_REACH = 24  # cells: the largest offset for which entries are taken from the table, and some
-SHIFT = 1e-9  # of the mean diagonal: makes the null force of a closed curve (constant normal force) definite
 
 
 @dataclass(eq=False)
@@ -90,7 +89,7 @@ class Coupling:
         self.matrix = np.zeros((2 * count, 2 * count))
         self.weights = np.ones(count)
         self._compliance = np.zeros(2 * count)
-        self._factor: tuple[np.ndarray, bool] | None = None
+        self._factor: CouplingFactor | None = None
         h = grid.spacing
         self._scale = 1.0 / (h * h)
         i_core, j_core = grid.core_index()
@@ -221,15 +220,23 @@ class Coupling:
         both = (2 * changed[:, None] + np.arange(2)).ravel()
         self.matrix[:, both] = self.matrix[both].T
 
-    def factorise(self, weights: np.ndarray) -> None:
-        """Factor the matrix for the given weights, shape (n,)."""
+    def factorise(self, weights: np.ndarray, moving: np.ndarray | None) -> None:
+        """Factor the matrix for the given weights, shape (n,).
+
+        Parameters
+        ----------
+        moving : ndarray of int or None
+            Points whose rows and weights change from step to step; None means all. The first call settles it.
+        """
         self.weights = weights
-        diagonal = np.diag(self.matrix)
         w = np.repeat(weights, 2)
-        self._compliance = diagonal * (1.0 - w) / w
-        system = self.matrix.copy()
-        system[np.diag_indices_from(system)] += self._compliance + SHIFT * diagonal.mean()
-        self._factor = cho_factor(system, lower=True, overwrite_a=True, check_finite=False)
+        self._compliance = np.diag(self.matrix) * (1.0 - w) / w
+        if self._factor is None:
+            changing = np.arange(self.count) if moving is None else moving
+            both = (2 * changing[:, None] + np.arange(2)).ravel()
+            self._factor = CouplingFactor(self.matrix, self._compliance, both)
+        else:
+            self._factor.update(self.matrix, self._compliance)
 
     def force_change(self, slip: np.ndarray, dt: float, force: np.ndarray) -> np.ndarray:
         """Return the change of point forces that removes the slip.
@@ -244,7 +251,7 @@ class Coupling:
             Present point forces, which compliant points give back in part.
         """
         right = slip.ravel() / dt - self._compliance * force.ravel()
-        return cho_solve(self._factor, right, check_finite=False).reshape(slip.shape)
+        return self._factor.solve(right).reshape(slip.shape)
 
     def whole_force(self, slip: np.ndarray, dt: float, velocity: np.ndarray) -> np.ndarray:
         """Return the point forces that remove the slip and replace forces at earlier places.
@@ -259,12 +266,12 @@ class Coupling:
             What those earlier forces give, per time (`velocity_from_earlier`).
         """
         right = (slip / dt + velocity).ravel()
-        return cho_solve(self._factor, right, check_finite=False).reshape(slip.shape)
+        return self._factor.solve(right).reshape(slip.shape)
 
     def response(self, velocities: np.ndarray) -> np.ndarray:
         """Return point forces times time that give the points these velocities, shape (m, n, 2) to (m, n, 2)."""
         columns = velocities.reshape(velocities.shape[0], -1).T
-        return np.ascontiguousarray(cho_solve(self._factor, columns, check_finite=False).T).reshape(velocities.shape)
+        return np.ascontiguousarray(self._factor.solve(columns).T).reshape(velocities.shape)
 
     def worst_slip(self, slip: np.ndarray) -> float:
         """Return the largest slip speed on points that carry their whole force."""

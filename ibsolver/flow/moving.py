@@ -120,7 +120,7 @@ def begin_step(state: FlowState, problem: Problem, dt: float) -> Movement:
     coupling = problem.coupling
     coupling.move(state.points, problem.placement.points)
     coupling.build_from_lattice(problem.moving_points)
-    coupling.factorise(problem.rig.weights(problem.placement, problem.grid.spacing))
+    coupling.factorise(problem.rig.weights(problem.placement, problem.grid.spacing), problem.moving_points)
     masses = problem.mass_rig.place(configuration)
     movement = Movement(
         configuration,

@@ -80,16 +80,16 @@ _prepare()
 import numba  # noqa: E402  (after the environment is set)
 from numba import prange  # noqa: E402
 
-# "contract" (fused multiply-add) and the reassociations that vectorise, but not "nnan"/"ninf": these would let
-# the compiler delete tests for non-finite numbers.
-FAST = {"contract", "reassoc", "nsz", "arcp"}
+# No fast-math at all. Reassociation or contraction would leave the compiler a choice, and it chooses differently when it
+# compiles in this process and when it loads the same kernel from the cache: the bits of a run would then depend on
+# whether it was the first (seen with "reassoc" and "contract" in `momentum.predict`). Element-wise loops vectorise all the
+# same; and tests for numbers that are not finite stay.
+FAST = False
 
 kernel: Callable[..., Any] = numba.njit(cache=True, fastmath=FAST, error_model="numpy", nogil=True)
 parallel_kernel: Callable[..., Any] = numba.njit(
     cache=True, fastmath=FAST, error_model="numpy", nogil=True, parallel=True
 )
-# Exact: no reassociation at all, for sums whose bits must not depend on the machine's vector width.
-exact_kernel: Callable[..., Any] = numba.njit(cache=True, fastmath=False, error_model="numpy", nogil=True)
 inline = numba.njit(fastmath=FAST, error_model="numpy", inline="always")
 
 
@@ -107,6 +107,14 @@ def set_threads(threads: int | None) -> int:
         raise ValueError(f"{threads} threads asked for; this machine allows 1 to {numba.config.NUMBA_NUM_THREADS}.")
     numba.set_num_threads(threads)
     return threads
+
+
+SMALL_GRID = 25_000  # cells: below, handing work to a second thread costs what it saves, and much more on a busy machine
+
+
+def sensible_threads(cells: int) -> int:
+    """Return how many threads a grid of so many cells deserves on this machine."""
+    return 1 if cells < SMALL_GRID else min(available_cores(), numba.config.NUMBA_NUM_THREADS)
 
 
 def available_cores() -> int:
@@ -137,12 +145,12 @@ def one_blas_thread() -> Iterator[None]:
 __all__ = [
     "available_cores",
     "cache_folder",
-    "exact_kernel",
     "inline",
     "kernel",
     "one_blas_thread",
     "parallel_kernel",
     "prange",
+    "sensible_threads",
     "set_threads",
     "threading_layer",
 ]

@@ -88,7 +88,7 @@ def assemble(case: Case, rig: Rig | None = None) -> Problem:
             coupling.build_from_lattice()
         else:
             coupling.build_exact()
-        coupling.factorise(rig.weights(placement, grid.spacing))
+        coupling.factorise(rig.weights(placement, grid.spacing), problem.moving_points)
     return problem
 
 

@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from ibsolver.case.model import Case
 from ibsolver.flow.advance import Problem, advance
 from ibsolver.flow.timestep import EDGE_SPEED
-from ibsolver.kernels._jit import one_blas_thread
+from ibsolver.kernels._jit import one_blas_thread, sensible_threads, set_threads
 from ibsolver.run.assemble import assemble, start_state
 
 DOUBLES_PER_CELL = 20
@@ -70,7 +70,10 @@ def forecast(case: Case, timed_steps: int = 20, problem: Problem | None = None) 
         begin = time.perf_counter()
         problem = problem or assemble(case)
         setup = time.perf_counter() - begin
-        step_seconds = _time_steps(case, problem, timed_steps) if timed_steps > 0 else float("nan")
+        step_seconds = float("nan")
+        if timed_steps > 0:
+            set_threads(sensible_threads(problem.grid.cells))
+            step_seconds = _time_steps(case, problem, timed_steps)
     duration = problem.time_end
     steps = _estimate_steps(problem, duration)
     cells = problem.grid.cells

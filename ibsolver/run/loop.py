@@ -78,7 +78,7 @@ def run_case(
     out : path
         Run directory; must not exist, or be empty, unless `overwrite`.
     threads : int, optional
-        Threads of the kernels; all cores of this process by default.
+        Threads of the kernels; by default all cores of this process, or one for a small grid.
     progress : callable, optional
         Receives a `Progress` after every step.
     overwrite : bool
@@ -93,9 +93,10 @@ def run_case(
     """
     directory = Path(out)
     with _jit.one_blas_thread():
-        used = _set_threads(threads)
+        _set_threads(threads)
         _require_memory(case)
         problem = assemble(case)
+        used = _set_threads(threads or _jit.sensible_threads(problem.grid.cells))
         _require_space(case, problem, directory)
         create_directory(case, directory, case_text if case_text is not None else case.text, overwrite)
         with WriterLock(directory) as lock:
@@ -135,9 +136,10 @@ def resume_case(
     _require_same_physics(stored, wanted, directory)
     checkpoint = read_latest(directory, physics_hash(stored)) if has_checkpoint(directory) else None
     with _jit.one_blas_thread(), WriterLock(directory) as lock:
-        used = _set_threads(threads)
+        _set_threads(threads)
         _require_memory(wanted)
         problem = assemble(wanted)
+        used = _set_threads(threads or _jit.sensible_threads(problem.grid.cells))
         if wanted != stored:
             write_case(directory, wanted, (directory / layout.CASE).read_text() if case is None else case.text)
         if checkpoint is None:

@@ -65,7 +65,7 @@ def test_a_point_of_little_weight_carries_little_force():
     coupling.build_exact()
     weights = np.ones(13)
     weights[6] = 1e-4
-    coupling.factorise(weights)
+    coupling.factorise(weights, np.zeros(0, dtype=int))
     slip = np.tile([0.0, 1.0], (13, 1))
     force = coupling.force_change(slip, 0.01, np.zeros((13, 2)))
     assert abs(force[6, 1]) < 1e-3 * np.abs(force[:, 1]).max()
@@ -77,3 +77,20 @@ def test_a_point_of_little_weight_carries_little_force():
 def test_a_point_outside_the_core_is_an_error_that_names_it():
     with pytest.raises(BodyError, match=r"x = 1\.2000.*core_margin"):
         make_coupling(np.array([[1.2, 0.0]]))
+
+
+@pytest.mark.parametrize("changing", [[], [8, 9, 10, 11], list(range(12))])
+def test_factor_with_resting_points_eliminated_equals_the_dense_solution(changing):
+    from ibsolver.flow.factor import CouplingFactor
+
+    rng = np.random.default_rng(3)
+    root = rng.standard_normal((12, 12))
+    matrix, added = root @ root.T, rng.uniform(0, 1, 12)
+    factor = CouplingFactor(matrix, added, np.array(changing, dtype=int))
+    if changing:  # another positive definite matrix with the same resting block
+        root[changing] = rng.standard_normal((len(changing), 12))
+        matrix = root @ root.T
+        factor.update(matrix, added)
+    for right in (rng.standard_normal(12), rng.standard_normal((12, 3))):
+        want = np.linalg.solve(matrix + np.diag(added), right)
+        np.testing.assert_allclose(factor.solve(right), want, rtol=1e-6, atol=1e-6)
