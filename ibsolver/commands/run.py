@@ -18,7 +18,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
     parser.add_argument("case", metavar="CASE", help="case file (TOML)")
     parser.add_argument("--out", metavar="DIR", type=Path, help="run directory (default: runs/ and the case's name)")
-    parser.add_argument("--threads", metavar="N", type=int, help="threads of the solver (default: every core; one on a small grid)")
+    parser.add_argument("--threads", metavar="N", type=int, help="threads (default: every core, one on a small grid)")
     parser.add_argument("--bare", action="store_true", help="write no plots and no forces.csv at the end")
     parser.add_argument("--overwrite", action="store_true", help="replace an earlier run in DIR (default: refuse)")
 
