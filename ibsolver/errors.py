@@ -50,10 +50,10 @@ class Fault:
 
     def __str__(self) -> str:
         place = f"{self.file}:{self.line}" if self.line else self.file
-        what = f" {self.key}" if self.key else ""
-        found = f" = {self.value}" if self.value else ""
+        found = f"{self.key} = {self.value}" if self.key and self.value else self.key or self.value
+        where = f"{place}: {found}" if found else place
         remedy = f" {self.suggestion}" if self.suggestion else ""
-        return f"{place}:{what}{found}: {self.problem}{remedy}"
+        return f"{where}: {self.problem}{remedy}"
 
 
 class CaseError(IbsolverError):

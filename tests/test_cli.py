@@ -10,6 +10,7 @@ from pathlib import Path
 
 import pytest
 
+from ibsolver.cli import VERBS
 from tests.runs import SMALL_CASE, write_case
 
 ROOT = Path(__file__).resolve().parent.parent
@@ -26,16 +27,23 @@ def test_no_words_gives_help_and_status_2(tmp_path):
     assert done.returncode == 2 and "first steps" in done.stdout
 
 
+def test_help_lists_every_verb_and_fits_80_columns(tmp_path):
+    done = ibsolver("--help", cwd=tmp_path, COLUMNS="80")
+    assert done.returncode == 0 and max(map(len, done.stdout.splitlines())) < 80
+    for verb in VERBS:
+        assert f"  {verb.name} " in done.stdout and verb.does in done.stdout
+
+
 def test_version(tmp_path):
     done = ibsolver("--version", cwd=tmp_path)
     assert done.returncode == 0 and done.stdout.startswith("ibsolver ")
 
 
-@pytest.mark.parametrize("verb", ["new", "check", "run", "forces", "picture"])
-def test_help_of_every_verb_has_two_examples(tmp_path, verb):
-    done = ibsolver(verb, "--help", cwd=tmp_path)
-    assert done.returncode == 0
-    assert done.stdout.partition("examples:")[2].count(f"ibsolver {verb} ") >= 2
+@pytest.mark.parametrize("verb", [verb.name for verb in VERBS])
+def test_help_of_every_verb_has_two_examples_in_80_columns(tmp_path, verb):
+    done = ibsolver(verb, "--help", cwd=tmp_path, COLUMNS="80")
+    assert done.returncode == 0 and max(map(len, done.stdout.splitlines())) < 80
+    assert done.stdout.partition("examples:")[2].count(f"  ibsolver {verb}") >= 2
     assert "--json" in done.stdout and "--quiet" in done.stdout
 
 
@@ -46,13 +54,31 @@ def test_help_of_every_verb_has_two_examples(tmp_path, verb):
         (["fly"], "There are: new, check"),
         (["run"], "required: CASE"),
         (["run", "x.toml", "--thread", "many"], "See `ibsolver run --help`"),
+        (["run", "x.toml", "--ovewrite"], "did you mean --overwrite?"),
+        (["run", "x.toml", "--over"], "'--over' is not known here"),
+        (["run", "x.toml", "--threads", "0"], "'0' threads asked for; this machine has 1 to"),
+        (["--json", "check", "x.toml"], "options follow the verb"),
+        (["check", "--picture", "x.toml"], "'x.toml' must end in .png"),
+        (["forces", "r", "--csv", "x.toml"], "'x.toml' must end in .csv"),
         (["picture", "nowhere"], "no such run directory"),
     ],
 )
 def test_wrong_usage_is_a_sentence_and_status_2(tmp_path, words, sentence):
     done = ibsolver(*words, cwd=tmp_path)
     assert done.returncode == 2 and sentence in done.stderr and "Traceback" not in done.stderr
-    assert done.stdout == ""
+    assert done.stdout == "" and list(tmp_path.iterdir()) == []
+
+
+def test_a_picture_never_replaces_a_case(tmp_path):
+    case, other = write_case(tmp_path), write_case(tmp_path, name="other.toml")
+    assert ibsolver("check", case, "--picture", other, cwd=tmp_path).returncode == 2
+    assert other.read_text() == SMALL_CASE
+
+
+@pytest.mark.parametrize("words", [["check", "."], ["check", "none.toml"], ["run", "none.toml"]])
+def test_a_case_that_is_no_file_is_a_sentence(tmp_path, words):
+    done = ibsolver(*words, cwd=tmp_path)
+    assert done.returncode == 3 and done.stderr.startswith(f"ibsolver: {words[1]}:") and "Traceback" not in done.stderr
 
 
 def test_every_fault_of_a_case_is_told_at_once_with_its_line(tmp_path):
@@ -107,6 +133,7 @@ def test_new_check_run_forces_picture(tmp_path):
     assert drawn.returncode == 0 and drawn.stdout == "" and (tmp_path / "w.png").exists()
     told = ibsolver("forces", "runs/small", "--cutoff-hz", "0.05", cwd=tmp_path)
     assert told.returncode == 0 and "Two-dimensional" in told.stdout and "filter: butterworth" in told.stdout
+    assert max(map(len, told.stdout.splitlines())) < 80
 
 
 def test_bare_and_quiet_write_no_plots_and_no_words(tmp_path):
@@ -121,7 +148,7 @@ def test_new_writes_what_check_accepts_and_never_overwrites(tmp_path):
     assert ibsolver("check", "p.toml", "--no-timing", cwd=tmp_path).returncode == 0
     assert ibsolver("new", "plate-with-flap", "--out", "p.toml", cwd=tmp_path).returncode == 5
     wrong = ibsolver("new", "plat", cwd=tmp_path)
-    assert wrong.returncode == 2 and "Did you mean 'plate'?" in wrong.stderr
+    assert wrong.returncode == 2 and "Did you mean plate?" in wrong.stderr
 
 
 def test_a_fault_of_ours_is_one_sentence_and_status_1(tmp_path):
@@ -132,10 +159,64 @@ def test_a_fault_of_ours_is_one_sentence_and_status_1(tmp_path):
     assert "a fault of ours" in done.stderr and "IBSOLVER_TRACEBACK=1" in done.stderr and "Traceback" not in done.stderr
 
 
-def test_a_closed_pipe_is_no_fault(tmp_path):
-    command = f"{sys.executable} -m ibsolver new plate-with-flap | head -n 1"
-    done = subprocess.run(["bash", "-c", command], capture_output=True, text=True, cwd=ROOT)
-    assert "Traceback" not in done.stderr and "Exception" not in done.stderr
+@pytest.mark.parametrize("words", ["new plate-with-flap", "--help", "run --help", "new plate --json"])
+def test_a_closed_pipe_is_no_fault(tmp_path, words):
+    command = f"{sys.executable} -m ibsolver {words} | true; exit ${{PIPESTATUS[0]}}"
+    env = {**os.environ, "PYTHONPATH": str(ROOT)}
+    env.pop("PYTHONUNBUFFERED", None)  # what is buffered comes out at the very end
+    done = subprocess.run(["bash", "-c", command], capture_output=True, text=True, cwd=tmp_path, env=env)
+    assert done.returncode == 0 and done.stderr == ""
+
+
+def test_no_output_at_all_is_no_fault(tmp_path):
+    command = f"{sys.executable} -m ibsolver new plate >&-"
+    env = {**os.environ, "PYTHONPATH": str(ROOT)}
+    done = subprocess.run(["bash", "-c", command], capture_output=True, text=True, cwd=tmp_path, env=env)
+    assert done.returncode == 0 and done.stderr == ""
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="no device that is always full")
+@pytest.mark.parametrize("unbuffered", ["", "1"])
+def test_output_to_a_full_disk_is_status_5(tmp_path, unbuffered):
+    env = {**os.environ, "PYTHONPATH": str(ROOT), "PYTHONUNBUFFERED": unbuffered}
+    with open("/dev/full", "w") as full:
+        command = [sys.executable, "-m", "ibsolver", "new", "plate"]
+        done = subprocess.run(command, stdout=full, stderr=subprocess.PIPE, text=True, cwd=tmp_path, env=env)
+    assert done.returncode == 5
+    assert "the disk is full" in done.stderr and "Exception" not in done.stderr and "fault of ours" not in done.stderr
+
+
+@pytest.mark.skipif(sys.platform == "win32", reason="no pseudo-terminals")
+@pytest.mark.parametrize(("terminal", "redrawn"), [("xterm", True), ("dumb", False)])
+def test_on_a_terminal_the_progress_line_is_redrawn_without_colour(tmp_path, terminal, redrawn):
+    import pty
+    import re
+
+    case = write_case(tmp_path, SMALL_CASE.replace("travel = 0.6", "travel = 0.2"))
+    ours, theirs = pty.openpty()
+    env = {**os.environ, "PYTHONPATH": str(ROOT), "TERM": terminal, "NO_COLOR": "1", "COLUMNS": "80"}
+    command = [sys.executable, "-m", "ibsolver", "run", str(case), "--bare", "--threads", "1"]
+    with subprocess.Popen(command, stdout=subprocess.PIPE, stderr=theirs, text=True, cwd=tmp_path, env=env) as process:
+        os.close(theirs)
+        seen = drained(ours)
+        printed = process.stdout.read()
+    assert process.returncode == 0 and "chords in" in printed
+    assert "time left" in seen and "\x1b" not in printed
+    assert ("\x1b[2K" in seen) is redrawn and not re.search("\x1b\\[[0-9;]*m", seen)
+
+
+def drained(terminal: int) -> str:
+    """Return everything that is written to a pseudo-terminal until its last writer has gone."""
+    seen = b""
+    while True:
+        try:
+            piece = os.read(terminal, 4096)
+        except OSError:  # what Linux says at the end
+            piece = b""
+        if not piece:
+            os.close(terminal)
+            return seen.decode()
+        seen += piece
 
 
 def test_status_and_resume_after_a_signal(tmp_path):

@@ -9,6 +9,8 @@ from pathlib import Path
 
 import pytest
 
+from ibsolver.cli import VERBS
+
 ROOT = Path(__file__).resolve().parent.parent
 
 MAY_IMPORT = {
@@ -21,6 +23,8 @@ MAY_IMPORT = {
     "ibsolver.kernels": set(),
     "ibsolver.flow": {"errors", "kernels", "grid", "body"},
     "ibsolver.runfile": {"errors", "_version"},
+    "ibsolver.cli": {"errors", "_version", "commands"},
+    "ibsolver.__main__": {"cli"},
     "ibsolver.run": {"errors", "case", "grid", "body", "motion", "kernels", "flow", "runfile"},
 }
 POSTPROCESS = {"ibsolver.runfile", "ibsolver.case", "ibsolver.errors"}
@@ -30,6 +34,10 @@ ONLY_IN = {
     "matplotlib": "postprocess/figures/",
     "numba": "ibsolver/kernels/_jit.py",
 }
+HEAVY = (
+    "numpy", "scipy", "numba", "matplotlib", "h5py", "meshio", "rich", "postprocess", "ibsolver.run", "ibsolver.flow",
+    "ibsolver.kernels", "ibsolver.grid", "ibsolver.body", "ibsolver.motion",
+)  # fmt: skip
 
 
 def imports_of(path: Path) -> set[str]:
@@ -60,6 +68,34 @@ def test_rooms_import_only_what_they_may(room):
                 )
 
 
+def test_every_room_has_its_row():
+    rooms = {f"ibsolver.{path.stem}" for path in (ROOT / "ibsolver").iterdir() if path.suffix in ("", ".py")}
+    free = {"ibsolver.__init__", "ibsolver.commands", "ibsolver.__pycache__"}
+    assert rooms - free == set(MAY_IMPORT)
+
+
+def test_the_package_itself_imports_only_its_version_before_it_is_asked():
+    found = {n.module for n in ast.parse((ROOT / "ibsolver" / "__init__.py").read_text()).body if hasattr(n, "module")}
+    assert found == {"__future__", "typing", "ibsolver._version"}
+
+
+def test_commands_load_what_is_heavy_only_when_they_are_executed():
+    for path in files("ibsolver.commands"):
+        for node in ast.parse(path.read_text()).body:
+            names = [a.name for a in node.names] if isinstance(node, ast.Import) else [getattr(node, "module", "")]
+            for name in filter(None, names):
+                assert not name.startswith(HEAVY), f"{path.name} imports {name} at its top"
+
+
+def test_the_map_in_the_package_holds():
+    import doctest
+
+    import ibsolver
+
+    result = doctest.testmod(ibsolver)
+    assert result.attempted >= 3 and result.failed == 0
+
+
 def test_postprocess_imports_no_solver():
     for path in files("postprocess"):
         for name in imports_of(path):
@@ -88,19 +124,41 @@ def test_help_loads_nothing_heavy():
     assert not loaded & {"numpy", "numba", "scipy", "matplotlib", "h5py", "meshio", "rich"}
 
 
-@pytest.mark.parametrize("verb", ["new", "check", "run", "forces", "picture"])
+@pytest.mark.parametrize("verb", [verb.name for verb in VERBS])
 def test_help_of_a_verb_loads_nothing_heavy(verb):
     loaded = loaded_after(f"from ibsolver.cli import main\nmain(['{verb}', '--help'])")
     assert not loaded & {"numpy", "numba", "scipy", "matplotlib", "h5py", "meshio", "rich"}
 
 
 def test_reading_a_case_loads_no_compiler_and_no_plotting():
-    loaded = loaded_after("import ibsolver\nibsolver.load_case('cases/towed_plate_with_flap.toml')")
+    loaded = loaded_after(
+        "import ibsolver\nfrom pathlib import Path\n"
+        "for path in ('towed_plate_with_flap', 'free_flap', 'pitching_plate', 'outline_from_csv', 'cylinder_re40'):\n"
+        "    ibsolver.load_case(f'cases/{path}.toml')"
+    )
     assert not loaded & {"numba", "scipy", "matplotlib", "h5py", "meshio"}
 
 
-@pytest.mark.parametrize("first", ["import ibsolver.run.loop, ibsolver", "import ibsolver"])
+def test_a_case_with_faults_is_told_without_loading_the_solver(tmp_path):
+    (tmp_path / "wrong.toml").write_text("[plate]\nincidence = 18\n")
+    for verb in ("check", "run"):
+        loaded = loaded_after(f"from ibsolver.cli import main\nassert main([{verb!r}, {str(tmp_path / 'wrong.toml')!r}]) == 3")
+        assert not loaded & {"numba", "scipy", "matplotlib", "h5py", "meshio"}
+
+
+FIRST = ("import ibsolver.run.loop, ibsolver", "import ibsolver", "from ibsolver import run; import ibsolver")
+
+
+@pytest.mark.parametrize("first", FIRST)
 def test_run_is_callable_in_either_order_of_import(first):
     loaded_after(
         f"{first}\nassert callable(ibsolver.run)\nfrom ibsolver.run import loop\nassert callable(ibsolver.run)"
+    )
+
+
+def test_the_compiler_comes_only_when_run_is_called():
+    loaded = loaded_after("import ibsolver\nassert callable(ibsolver.run)\nassert callable(ibsolver.load_case)")
+    assert "numba" not in loaded
+    assert "numba" in loaded_after(
+        "import ibsolver\ntry:\n    ibsolver.run(None, out='nowhere')\nexcept AttributeError:\n    pass"
     )

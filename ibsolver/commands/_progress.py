@@ -19,12 +19,14 @@ class ProgressLine:
         self._next = 0.0
 
     def __enter__(self) -> ProgressLine:
-        if not self._quiet and sys.stderr.isatty():
+        if not self._quiet and sys.stderr is not None and sys.stderr.isatty():
             from rich.console import Console
             from rich.live import Live
 
-            self._live = Live(console=Console(stderr=True), refresh_per_second=4, transient=True)
-            self._live.__enter__()
+            console = Console(stderr=True)
+            if not console.is_dumb_terminal:
+                self._live = Live(console=console, refresh_per_second=4, transient=True)
+                self._live.__enter__()
         return self
 
     def __exit__(
@@ -40,25 +42,31 @@ class ProgressLine:
             return
         if self._live is not None:
             self._next = now + 0.2
-            self._live.update(sentence(report))
+            self._live.update(_one_line(sentence(report)))
             return
         self._next = now + EVERY
         print(sentence(report), file=sys.stderr, flush=True)
 
 
+def _one_line(text: str) -> Any:
+    """Return a plain text that a narrow terminal cuts instead of wrapping."""
+    from rich.text import Text
+
+    return Text(text, no_wrap=True, overflow="ellipsis")
+
+
 def sentence(report: Any) -> str:
-    """Return a report as one line."""
-    share = 100.0 * min(report.travel / report.travel_end, 1.0)
+    """Return a report as one line, which fits 80 columns unless a coefficient is absurd; c is the chord or diameter."""
     return (
-        f"travel {report.travel:7.3f} of {report.travel_end:g} chords ({share:3.0f} %)   C_L {report.lift:7.3f}   "
-        f"C_D {report.drag:7.3f}   Courant {report.courant:.2f}   time left {duration(report.seconds_left)}"
+        f"travel {report.travel:.2f} of {report.travel_end:g} c  C_L {report.lift:5.2f}  C_D {report.drag:5.2f}  "
+        f"Courant {report.courant:.2f}  time left {duration(report.seconds_left)}"
     )
 
 
 def duration(seconds: float) -> str:
     """Return a wall time in words short enough for a line."""
     if not seconds < 1e8:
-        return "unknown yet"
+        return "unknown"
     if seconds < 100:
         return f"{seconds:.0f} s"
     if seconds < 6000:

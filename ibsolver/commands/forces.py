@@ -7,7 +7,7 @@ filtered as in the laboratory: resampled at an even rate, then low-passed; raw a
 from __future__ import annotations
 
 import argparse
-from pathlib import Path
+import textwrap
 from typing import Any
 
 EXAMPLES = ("forces runs/plate", "forces runs/plate --cutoff-hz 2 --rate-hz 100 --causal --window 2 8")
@@ -15,9 +15,11 @@ EXAMPLES = ("forces runs/plate", "forces runs/plate --cutoff-hz 2 --rate-hz 100 
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
+    from ibsolver.commands._options import csv_file, png_file
+
     parser.add_argument("directory", metavar="DIR", help="run directory, finished or not")
-    parser.add_argument("--csv", metavar="FILE", type=Path, help="CSV file (default: DIR/forces.csv)")
-    parser.add_argument("--plot", metavar="FILE", type=Path, help="PNG file (default: DIR/forces.png)")
+    parser.add_argument("--csv", metavar="FILE", type=csv_file, help="CSV file (default: DIR/forces.csv)")
+    parser.add_argument("--plot", metavar="FILE", type=png_file, help="PNG file (default: DIR/forces.png)")
     parser.add_argument(
         "--window", nargs=2, type=float, metavar=("FROM", "TO"), help="travel for means, chords (default: second half)"
     )
@@ -54,7 +56,9 @@ def execute(options: argparse.Namespace) -> dict[str, Any]:
         window=tuple(options.window) if options.window else None,
     )
     if not (options.json or options.quiet):
-        print("\n".join(lines(summary)))
+        for line in lines(summary):
+            print(textwrap.fill(line, 79, subsequent_indent="  ", break_on_hyphens=False))
+        print("\n".join(summary["files"]))
     return summary
 
 
@@ -80,4 +84,4 @@ def lines(summary: dict[str, Any]) -> list[str]:
     )
     if summary["filter"]:
         text.append(f"filter: {summary['filter']}")
-    return [*text, summary["caution"], *summary["files"]]
+    return [*text, summary["caution"]]

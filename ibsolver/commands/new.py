@@ -1,6 +1,7 @@
 """Write a commented starter case.
 
-Without --out the case goes to standard output. Nothing is overwritten.
+Without --out the case goes to standard output. Nothing is overwritten. With --out the kind "outline" comes with an
+outline.csv to replace by your own.
 """
 
 from __future__ import annotations
@@ -9,7 +10,7 @@ import argparse
 from pathlib import Path
 from typing import Any
 
-from ibsolver.errors import StorageError, UsageError
+from ibsolver.errors import StorageError
 
 EXAMPLES = ("new plate-with-flap --out plate.toml", "new cylinder")
 
@@ -23,24 +24,38 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 
 
 def execute(options: argparse.Namespace) -> dict[str, Any]:
-    """Write the case and return its place."""
-    import difflib
+    """Write the case, and what it names, and return where."""
+    from ibsolver.case.template import OUTLINE_CSV, new_case
 
-    from ibsolver.case.template import KINDS, new_case
-    from ibsolver.runfile.atomic import write_bytes
-
-    if options.kind not in KINDS:
-        near = difflib.get_close_matches(options.kind, list(KINDS), 1)
-        hint = f"Did you mean {near[0]!r}?" if near else f"There are: {', '.join(KINDS)}."
-        raise UsageError(f"{options.kind!r} is not a kind of case. {hint}")
     text = new_case(options.kind)
     if options.out is None:
         if not options.json:
             print(text, end="")
         return {"kind": options.kind, "text": text}
-    if options.out.exists():
-        raise StorageError(f"{options.out}: exists already and is not overwritten. Choose another name.")
-    write_bytes(options.out, text.encode())
+    files = {options.out: text}
+    if options.kind == "outline":
+        files[options.out.with_name("outline.csv")] = OUTLINE_CSV
+    _write(files)
     if not (options.json or options.quiet):
-        print(f"{options.out} written. Look at it, then: ibsolver check {options.out}")
-    return {"kind": options.kind, "file": str(options.out)}
+        names = " and ".join(str(file) for file in files)
+        print(f"{names} written. Look at it, then: ibsolver check {options.out}")
+    return {"kind": options.kind, "files": [str(file) for file in files]}
+
+
+def _write(files: dict[Path, str]) -> None:
+    """Write new files, all or none of them.
+
+    Raises
+    ------
+    StorageError
+        If one of them exists, or its folder does not.
+    """
+    from ibsolver.runfile.atomic import write_bytes
+
+    for file in files:
+        if file.exists():
+            raise StorageError(f"{file}: exists already and is not overwritten. Choose another name or folder with --out.")
+        if not file.parent.is_dir():
+            raise StorageError(f"{file}: there is no folder {file.parent}. Make it first, or choose another name.")
+    for file, text in files.items():
+        write_bytes(file, text.encode())

@@ -6,7 +6,6 @@ All panels share one scale and one symmetric colour range; counter-clockwise rot
 from __future__ import annotations
 
 import argparse
-from pathlib import Path
 from typing import Any
 
 EXAMPLES = ("picture runs/plate", "picture runs/plate --travel 1 2 4 --limit 15 --out lev.png")
@@ -14,8 +13,10 @@ EXAMPLES = ("picture runs/plate", "picture runs/plate --travel 1 2 4 --limit 15 
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
+    from ibsolver.commands._options import png_file
+
     parser.add_argument("directory", metavar="DIR", help="run directory, finished or not")
-    parser.add_argument("--out", metavar="FILE", type=Path, help="PNG file (default: DIR/vorticity.png)")
+    parser.add_argument("--out", metavar="FILE", type=png_file, help="PNG file (default: DIR/vorticity.png)")
     parser.add_argument(
         "--travel", nargs="+", type=float, metavar="S", help="travels in chords (default: four, evenly spaced)"
     )

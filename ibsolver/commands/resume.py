@@ -16,9 +16,11 @@ EXAMPLES = ("resume runs/plate", "resume runs/plate --travel 12")
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
+    from ibsolver.commands._options import add_threads
+
     parser.add_argument("directory", metavar="DIR", type=Path, help="run directory")
     parser.add_argument("--travel", type=float, metavar="S", help="longer travel in chords (default: as the case says)")
-    parser.add_argument("--threads", metavar="N", type=int, help="threads (default: every core, one on a small grid)")
+    add_threads(parser)
     parser.add_argument("--bare", action="store_true", help="write no plots and no forces.csv at the end")
 
 

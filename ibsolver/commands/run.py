@@ -16,9 +16,11 @@ EXAMPLES = ("run cases/towed_plate_with_flap.toml", "run plate.toml --out runs/p
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
+    from ibsolver.commands._options import add_threads
+
     parser.add_argument("case", metavar="CASE", help="case file (TOML)")
     parser.add_argument("--out", metavar="DIR", type=Path, help="run directory (default: runs/ and the case's name)")
-    parser.add_argument("--threads", metavar="N", type=int, help="threads (default: every core, one on a small grid)")
+    add_threads(parser)
     parser.add_argument("--bare", action="store_true", help="write no plots and no forces.csv at the end")
     parser.add_argument("--overwrite", action="store_true", help="replace an earlier run in DIR (default: refuse)")
 
@@ -33,7 +35,7 @@ def execute(options: argparse.Namespace) -> dict[str, Any]:
     from ibsolver.run.loop import run_case
 
     if not options.quiet:
-        print(f"{case.title}\nwriting {out}", file=sys.stderr)
+        print(f"{case.title or options.case}\nwriting {out}", file=sys.stderr)
     with ProgressLine(options.quiet) as line:
         result = run_case(case, out, threads=options.threads, progress=line, overwrite=options.overwrite)
     return finish(result, options.bare, options.quiet or options.json)
@@ -46,8 +48,8 @@ def finish(result: Any, bare: bool, silent: bool) -> dict[str, Any]:
         from ibsolver.commands._progress import duration
 
         print(
-            f"{result.travel:.3g} chords in {result.steps} steps, {duration(result.seconds)} "
-            f"({result.ns_per_cell_step:.0f} ns a cell and step, {result.solves_per_step:.2f} Poisson solves a step)"
+            f"{result.travel:.3g} chords in {result.steps:,} steps, {duration(result.seconds)}\n"
+            f"{result.ns_per_cell_step:.0f} ns a cell and step, {result.solves_per_step:.2f} Poisson solves a step"
         )
         for file in files or [str(result.directory)]:
             print(file)
