@@ -38,7 +38,9 @@ def test_shapes_are_those_of_the_contract():
 @given(t=st.floats(0.01, 9.0))
 def test_distance_is_the_integral_and_acceleration_the_derivative(name, t):
     law = LAWS[name]
-    assert law.distance(t) == pytest.approx(quad(law.speed, 0, t, points=[1.0, 1.4, 2.0], limit=200)[0], abs=1e-7)
+    edges = [0.0, *(kink for kink in (0.5, 1.0, 1.4, 2.0, 8.0) if kink < t), t]  # each piece is smooth
+    integral = sum(quad(law.speed, a, b)[0] for a, b in zip(edges[:-1], edges[1:], strict=True))
+    assert law.distance(t) == pytest.approx(integral, abs=1e-7)
     if name != "impulsive" and min(abs(t - k) for k in (0.5, 1.0, 1.4, 2.0, 8.0)) > 1e-3:
         numeric = (law.speed(t + 1e-6) - law.speed(t - 1e-6)) / 2e-6
         assert law.acceleration(t) == pytest.approx(numeric, abs=1e-5)
