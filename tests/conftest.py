@@ -5,10 +5,16 @@ from __future__ import annotations
 import os
 
 import pytest
+from hypothesis import settings
 
 from tests.runs import write_case
 
 os.environ.setdefault("NO_COLOR", "1")
+
+# The same examples every time: a test that passed yesterday does not fail today by chance. Deadlines are for hangs; the
+# machine is shared.
+settings.register_profile("steady", derandomize=True, deadline=5000)
+settings.load_profile("steady")
 
 
 @pytest.fixture(scope="session")
