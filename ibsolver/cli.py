@@ -91,6 +91,7 @@ class _Parser(argparse.ArgumentParser):
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run the command line and return the exit status (see the README)."""
     words = list(sys.argv[1:] if arguments is None else arguments)
+    _spell_out_what_cannot_be_printed()
     status = _guarded(lambda: _dispatch(words))
     return status or _guarded(_flush)
 
@@ -122,6 +123,12 @@ def _guarded(work: Callable[[], int]) -> int:
             "Set IBSOLVER_TRACEBACK=1 to see where, and please report it."
         )
         return IbsolverError.exit_status
+
+
+def _spell_out_what_cannot_be_printed() -> None:
+    """Let a title or file name with signs that the terminal's encoding lacks be printed all the same."""
+    with contextlib.suppress(AttributeError, ValueError, OSError):
+        sys.stdout.reconfigure(errors="backslashreplace")
 
 
 def _flush() -> int:

@@ -59,8 +59,13 @@ def test_help_of_every_verb_has_two_examples_in_80_columns(tmp_path, verb):
         (["run", "x.toml", "--threads", "0"], "'0' threads asked for; this machine has 1 to"),
         (["--json", "check", "x.toml"], "options follow the verb"),
         (["check", "--picture", "x.toml"], "'x.toml' must end in .png"),
-        (["forces", "r", "--csv", "x.toml"], "'x.toml' must end in .csv"),
+        (["forces", "--csv", "x.toml", "r"], "'x.toml' must end in .csv"),
         (["picture", "nowhere"], "no such run directory"),
+        (["status", "nowhere"], "no such run directory"),
+        (["resume", "."], "there is no run in this folder"),
+        (["run", "x.toml", "--out", ""], "an empty name"),
+        (["check", ""], "an empty name"),
+        (["check", "x.toml", "--picture", "nowhere/x.png"], "there is no folder nowhere"),
     ],
 )
 def test_wrong_usage_is_a_sentence_and_status_2(tmp_path, words, sentence):
@@ -134,6 +139,68 @@ def test_new_check_run_forces_picture(tmp_path):
     told = ibsolver("forces", "runs/small", "--cutoff-hz", "0.05", cwd=tmp_path)
     assert told.returncode == 0 and "Two-dimensional" in told.stdout and "filter: butterworth" in told.stdout
     assert max(map(len, told.stdout.splitlines())) < 80
+
+
+NUMBERS_OF_A_RUN = (["status"], ["forces"], ["forces", "--cutoff", "1"], ["picture"])
+
+
+@pytest.mark.parametrize("words", NUMBERS_OF_A_RUN, ids=" ".join)
+def test_json_is_one_object_that_every_reader_takes(small_run, tmp_path, words):
+    files = {"forces": ["--csv", "f.csv", "--plot", "f.png"], "picture": ["--out", "v.png"]}.get(words[0], [])
+    done = ibsolver(words[0], small_run, *words[1:], *files, "--json", cwd=tmp_path)
+    assert done.returncode == 0 and done.stderr == ""
+
+    def refuse(word):
+        raise AssertionError(f"{word} is not JSON")
+
+    assert isinstance(json.loads(done.stdout, parse_constant=refuse), dict)
+
+
+@pytest.mark.parametrize("words", ["--filter bessel", "--order 2", "--causal", "--rate-hz 50"])
+def test_a_filter_that_is_described_but_has_no_cut_off_is_not_silently_left_out(small_run, tmp_path, words):
+    done = ibsolver("forces", small_run, *words.split(), "--csv", "f.csv", "--plot", "f.png", cwd=tmp_path)
+    assert done.returncode == 2 and "add --cutoff-hz or --cutoff" in done.stderr and list(tmp_path.iterdir()) == []
+
+
+def test_overwrite_replaces_a_run_and_nothing_else(tmp_path):
+    folder, case = tmp_path / "mine", write_case(tmp_path)
+    folder.mkdir()
+    (folder / "case.toml").write_text("# by hand")
+    (folder / "history.csv").write_text("t, v")
+    refused = ibsolver("run", case, "--out", "mine", "--overwrite", cwd=tmp_path)
+    assert refused.returncode == 5 and "no run is in this folder" in refused.stderr
+    assert (folder / "case.toml").read_text() == "# by hand" and len(list(folder.iterdir())) == 2
+    for _ in range(2):
+        assert ibsolver("run", case, "--out", "r", "--overwrite", "--bare", "--quiet", cwd=tmp_path).returncode == 0
+
+
+def test_a_run_resumed_at_its_end_has_no_cost(small_run, tmp_path):
+    import shutil
+
+    shutil.copytree(small_run, tmp_path / "r")
+    told = ibsolver("resume", "r", "--bare", cwd=tmp_path)
+    assert told.returncode == 0 and "nothing was left to march" in told.stdout and "ns a cell" not in told.stdout
+    assert json.loads(ibsolver("resume", "r", "--bare", "--json", cwd=tmp_path).stdout)["ns_per_cell_step"] is None
+
+
+def test_signs_that_the_terminal_lacks_are_spelt_out(tmp_path):
+    case = tmp_path / "case.toml"
+    case.write_text(SMALL_CASE.replace("Small plate", "Fl\u00fcgel \u03b1"), encoding="utf-8")
+    done = ibsolver("check", case, "--no-timing", cwd=tmp_path, PYTHONIOENCODING="ascii")
+    assert done.returncode == 0 and done.stdout.startswith("Fl\\xfcgel \\u03b1 with a flap"), done.stderr
+
+
+def test_help_costs_little_more_than_starting_python(tmp_path):
+    """A ratio, the better of several tries: whatever is loaded for it costs the same machine the same way."""
+    import time
+
+    def seconds(*words: str) -> float:
+        begin = time.perf_counter()
+        subprocess.run([sys.executable, *words], cwd=ROOT, capture_output=True, check=True)
+        return time.perf_counter() - begin
+
+    tries = [(seconds("-c", "pass"), seconds("-m", "ibsolver", "--help")) for _ in range(7)]
+    assert min(helped for _, helped in tries) < 8 * min(bare for bare, _ in tries)
 
 
 def test_bare_and_quiet_write_no_plots_and_no_words(tmp_path):

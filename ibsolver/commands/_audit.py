@@ -10,8 +10,9 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 
 from ibsolver.case import scales
+from ibsolver.case.cautions import MOST_BLOCKAGE
 from ibsolver.case.model import Case, Motion
-from ibsolver.case.placement import extent, motion_range
+from ibsolver.case.placement import extent, has_body, motion_range
 
 GREATEST_OVER_MEAN = {"linear": 1.0, "hold acceleration": 1.0, "smooth": 1.875}  # of the acceleration while starting
 STROUHAL = 0.2  # shedding frequency times projected height over speed, of bluff bodies (common practice)
@@ -143,7 +144,8 @@ class TankNumbers:
         Lowest wet natural frequency of the balance: 5 to 10 times the highest frequency of interest (Hz); the start then
         lasts at least 5 natural periods, where 2 to 3 are the least (common practice).
     sample_rate : tuple of float
-        10 to 20 times the highest frequency of interest (Hz).
+        10 to 20 times the highest frequency of interest (Hz). It may lie at the natural frequency, whose ringing would
+        then pass for a steady load (sampling theorem): an analogue filter or twice that rate keeps it out.
     filter_below : float
         Cut-off of the low-pass filter at most (Hz): 0.4 times the lowest of the natural frequencies above.
     """
@@ -213,6 +215,16 @@ def highest_frequency(case: Case) -> float:
     ramp = starting_time(case)
     start = 1.0 / ramp if ramp > 0 else 0.0
     return max(MULTIPLE * STROUHAL / height, start, *_motion_frequencies(case))
+
+
+def least_tank_width(case: Case) -> float | None:
+    """Return the width between side walls (chords) at which the blockage is 5 % (Maskell 1963); None without a body.
+
+    Blockage is the projected height c sin(incidence) over the width, as in `ibsolver.case.cautions.blockage`.
+    """
+    if not has_body(case):
+        return None
+    return (1.0 if case.cylinder is not None else math.sin(steepest(case))) / MOST_BLOCKAGE
 
 
 def _motion_frequencies(case: Case) -> Iterator[float]:

@@ -14,6 +14,7 @@ from ibsolver.commands._progress import duration
 WIDTH = 79
 NAME = 27  # columns of a row's name, its indent aside
 Row = tuple[str, str]
+ALIASING = "above twice the natural frequency where no analogue filter comes first (sampling theorem)"
 
 
 def report(case: Case, result: dict[str, Any]) -> list[str]:
@@ -123,10 +124,19 @@ def _resolution(case: Case, result: dict[str, Any]) -> list[Row]:
     rows += [(f"cells along flap {name}", f"{cells:.0f}") for name, cells in result["flap_cells"].items()]
     if result["blockage"] is not None:
         rows.append(("blockage", f"{100 * result['blockage']:.1f} % (keep under 5 %, Maskell 1963)"))
+    elif result["least_tank_width"]:
+        rows.append(("blockage", _width_to_have(case, result)))
     if result["domain_effect"] is not None:
         effect = f"lift too high by about {100 * result['domain_effect']:.1f} % after {DOMAIN_TRAVEL:g} chords, "
         rows.append(("finite domain", f"{effect}growing with travel"))
     return rows
+
+
+def _width_to_have(case: Case, result: dict[str, Any]) -> str:
+    """Return what open water leaves to the reader: how wide the tank must be."""
+    width, length = result["least_tank_width"], result["reference_length_m"]
+    size = f"{width:.3g} {length_word(case)}s" + ("" if length is None else f" = {1e3 * width * length:.3g} mm")
+    return f"unknown without both walls in [tank]; under 5 % in a tank wider than {size} (Maskell 1963)"
 
 
 def _cost(cost: dict[str, Any]) -> list[Row]:
@@ -164,7 +174,7 @@ def _tank(result: dict[str, Any]) -> list[Row]:
         *rows,
         ("highest frequency", f"{tank['highest_frequency']:.3g} Hz worth resolving (common practice)"),
         ("balance, wet, natural", f"at least {low:.3g} to {high:.3g} Hz, 5 to 10 times that"),
-        ("sample rate", f"{slow:.3g} to {fast:.3g} Hz, 10 to 20 times that"),
+        ("sample rate", f"{slow:.3g} to {fast:.3g} Hz, 10 to 20 times that; {ALIASING}"),
         ("low-pass filter", f"below 0.4 of the natural frequency, {tank['filter_below']:.3g} Hz for the lower one"),
     ]
 

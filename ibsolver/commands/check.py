@@ -30,9 +30,9 @@ _ABSENT = object()
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
-    from ibsolver.commands._options import png_file
+    from ibsolver.commands._options import named, png_file
 
-    parser.add_argument("case", metavar="CASE", help="case file (TOML)")
+    parser.add_argument("case", metavar="CASE", type=named, help="case file (TOML)")
     parser.add_argument(
         "--picture", metavar="FILE", type=png_file, nargs="?", const=_ABSENT, default=None,
         help="draw the case (default FILE: the case's name with .png, in this folder)",
@@ -46,7 +46,7 @@ def execute(options: argparse.Namespace) -> dict[str, Any]:
 
     target = None
     if options.picture is not None:
-        target = Path(Path(options.case).stem + ".png") if options.picture is _ABSENT else options.picture
+        target = Path(options.case.stem + ".png") if options.picture is _ABSENT else options.picture
     case = load_case(options.case)
     from ibsolver.run.assemble import assemble
     from ibsolver.run.forecast import forecast
@@ -86,6 +86,7 @@ def collect(case: Any, cost: Any) -> dict[str, Any]:
         "boundary_layer_cells": boundary_layer_cells(case) if has_body(case) else None,
         "flap_cells": {flap.name: flap.length * case.grid.cells_per_chord for flap in case.flaps},
         "blockage": blockage(case),
+        "least_tank_width": _audit.least_tank_width(case),
         "domain_effect": _audit.domain_effect(case),
         "normal_force": None if band is None else asdict(band),
         "added_mass_coefficient": _audit.added_mass_coefficient(case),

@@ -15,27 +15,27 @@ EXAMPLES = ("forces runs/plate", "forces runs/plate --cutoff-hz 2 --rate-hz 100 
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
-    from ibsolver.commands._options import csv_file, png_file
+    from ibsolver.commands._options import csv_file, png_file, positive, run_directory
 
-    parser.add_argument("directory", metavar="DIR", help="run directory, finished or not")
+    parser.add_argument("directory", metavar="DIR", type=run_directory, help="run directory, finished or not")
     parser.add_argument("--csv", metavar="FILE", type=csv_file, help="CSV file (default: DIR/forces.csv)")
     parser.add_argument("--plot", metavar="FILE", type=png_file, help="PNG file (default: DIR/forces.png)")
     parser.add_argument(
         "--window", nargs=2, type=float, metavar=("FROM", "TO"), help="travel for means, chords (default: second half)"
     )
     parser.add_argument(
-        "--cutoff-hz", type=float, metavar="F", help="cut-off of the low-pass filter, Hz (default: no filter)"
+        "--cutoff-hz", type=positive, metavar="F", help="cut-off of the low-pass filter, Hz (default: no filter)"
     )
-    parser.add_argument("--cutoff", type=float, metavar="F", help="the same in U/c, for dimensionless runs")
-    parser.add_argument("--order", type=int, default=4, metavar="N", help="order of the filter, 1 to 10 (default: 4)")
+    parser.add_argument("--cutoff", type=positive, metavar="F", help="the same in U/c, for dimensionless runs")
+    parser.add_argument("--order", type=int, metavar="N", help="order of the filter, 1 to 10 (default: 4)")
     parser.add_argument(
-        "--filter", default="butterworth", metavar="KIND", help="butterworth, bessel or 'moving average' (default: butterworth)"
+        "--filter", metavar="KIND", help="butterworth, bessel or 'moving average' (default: butterworth)"
     )
     parser.add_argument(
         "--causal", action="store_true", help="run the filter once, with its delay (default: zero phase)"
     )
     parser.add_argument(
-        "--rate-hz", type=float, metavar="F", help="sample rate of the laboratory, Hz (default: fine enough)"
+        "--rate-hz", type=positive, metavar="F", help="sample rate of the laboratory, Hz (default: fine enough)"
     )
 
 
@@ -43,23 +43,32 @@ def execute(options: argparse.Namespace) -> dict[str, Any]:
     """Write the files and return the summary."""
     import postprocess
 
-    summary = postprocess.forces(
-        options.directory,
-        options.csv,
-        options.plot,
-        cutoff=options.cutoff,
-        cutoff_hz=options.cutoff_hz,
-        order=options.order,
-        kind=options.filter,
-        zero_phase=not options.causal,
-        rate_hz=options.rate_hz,
-        window=tuple(options.window) if options.window else None,
-    )
+    window = tuple(options.window) if options.window else None
+    summary = postprocess.forces(options.directory, options.csv, options.plot, window=window, **low_pass(options))
     if not (options.json or options.quiet):
         for line in lines(summary):
             print(textwrap.fill(line, 79, subsequent_indent="  ", break_on_hyphens=False))
         print("\n".join(summary["files"]))
     return summary
+
+
+def low_pass(options: argparse.Namespace) -> dict[str, Any]:
+    """Return what `postprocess.forces` is to know of the filter.
+
+    Raises
+    ------
+    UsageError
+        If the filter is described but not asked for: silently unfiltered loads would be taken for filtered ones.
+    """
+    from ibsolver.errors import UsageError
+
+    details = {"order": options.order, "kind": options.filter, "rate_hz": options.rate_hz}
+    given = {name: value for name, value in details.items() if value is not None}
+    if options.causal:
+        given["zero_phase"] = False
+    if given and options.cutoff is None and options.cutoff_hz is None:
+        raise UsageError("--order, --filter, --causal and --rate-hz describe the low-pass filter: add --cutoff-hz or --cutoff.")
+    return {"cutoff": options.cutoff, "cutoff_hz": options.cutoff_hz, **given}
 
 
 def lines(summary: dict[str, Any]) -> list[str]:

@@ -18,9 +18,10 @@ EXAMPLES = ("new plate-with-flap --out plate.toml", "new cylinder")
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
     from ibsolver.case.template import KINDS
+    from ibsolver.commands._options import named
 
     parser.add_argument("kind", metavar="KIND", help=f"what to start from: {', '.join(KINDS)}")
-    parser.add_argument("--out", metavar="FILE", type=Path, help="case file to write; must not exist")
+    parser.add_argument("--out", metavar="FILE", type=named, help="case file to write; must not exist")
 
 
 def execute(options: argparse.Namespace) -> dict[str, Any]:

@@ -13,16 +13,17 @@ EXAMPLES = ("picture runs/plate", "picture runs/plate --travel 1 2 4 --limit 15 
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
-    from ibsolver.commands._options import png_file
+    from ibsolver.commands._options import png_file, positive, run_directory
 
-    parser.add_argument("directory", metavar="DIR", help="run directory, finished or not")
+    parser.add_argument("directory", metavar="DIR", type=run_directory, help="run directory, finished or not")
     parser.add_argument("--out", metavar="FILE", type=png_file, help="PNG file (default: DIR/vorticity.png)")
     parser.add_argument(
         "--travel", nargs="+", type=float, metavar="S", help="travels in chords (default: four, evenly spaced)"
     )
     parser.add_argument(
-        "--limit", type=float, metavar="W", help="vorticity at the ends of the colours, U/c (default: a round number)"
-    )
+        "--limit", type=positive, metavar="W",
+        help="vorticity at the ends of the colours, U/c (default: a round number)",
+    )  # fmt: skip
     parser.add_argument(
         "--region", nargs=4, type=float, metavar=("X0", "X1", "Y0", "Y1"),
         help="what to show, chords from the pivot (default: bodies and near wake)",
@@ -34,8 +35,6 @@ def execute(options: argparse.Namespace) -> dict[str, Any]:
     import postprocess
     from ibsolver.errors import UsageError
 
-    if options.limit is not None and not options.limit > 0:
-        raise UsageError(f"--limit {options.limit:g}: a vorticity above 0 is needed, in U/c.")
     region = tuple(options.region) if options.region else None
     if region and not (region[0] < region[1] and region[2] < region[3]):
         raise UsageError("--region: X0 must be less than X1, and Y0 less than Y1.")

@@ -16,9 +16,9 @@ EXAMPLES = ("resume runs/plate", "resume runs/plate --travel 12")
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
-    from ibsolver.commands._options import add_threads
+    from ibsolver.commands._options import add_threads, run_directory
 
-    parser.add_argument("directory", metavar="DIR", type=Path, help="run directory")
+    parser.add_argument("directory", metavar="DIR", type=run_directory, help="run directory")
     parser.add_argument("--travel", type=float, metavar="S", help="longer travel in chords (default: as the case says)")
     add_threads(parser)
     parser.add_argument("--bare", action="store_true", help="write no plots and no forces.csv at the end")

@@ -6,6 +6,7 @@ A run whose process is gone without a word (power cut, kill) is recognised on it
 from __future__ import annotations
 
 import argparse
+from pathlib import Path
 from typing import Any
 
 EXAMPLES = ("status runs/plate", "status runs/plate --json")
@@ -13,7 +14,9 @@ EXAMPLES = ("status runs/plate", "status runs/plate --json")
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the verb's arguments."""
-    parser.add_argument("directory", metavar="DIR", help="run directory")
+    from ibsolver.commands._options import run_directory
+
+    parser.add_argument("directory", metavar="DIR", type=run_directory, help="run directory")
 
 
 def execute(options: argparse.Namespace) -> dict[str, Any]:
@@ -26,7 +29,7 @@ def execute(options: argparse.Namespace) -> dict[str, Any]:
     return status
 
 
-def lines(status: dict[str, Any], directory: str) -> list[str]:
+def lines(status: dict[str, Any], directory: Path) -> list[str]:
     """Return the status as lines for a terminal."""
     from ibsolver.commands._progress import duration
 

@@ -142,6 +142,17 @@ def test_load_cell_range_and_resolution_refer_to_the_greater_peak():
     assert gentle.resolution_share == pytest.approx((1e-3 / gentle.load_peak, 2e-3 / gentle.load_peak))
 
 
+def test_the_least_tank_width_has_5_percent_of_blockage():
+    """Blockage c sin(incidence) / width under 5 % (Maskell 1963, R&M 3400): the caution begins beyond it."""
+    from ibsolver.case.cautions import blockage
+
+    width = _audit.least_tank_width(case())
+    assert width == pytest.approx(20 * math.sin(math.radians(18)))
+    walls = f"[tank]\nwall_above = {0.5 * width}\nwall_below = {0.5 * width}\n"
+    assert blockage(case(more=walls)) == pytest.approx(0.05)
+    cylinder = read_case_text("[cylinder]\n[tow]\nreynolds = 100\n")
+    assert _audit.least_tank_width(cylinder) == pytest.approx(20.0)
+
 
 def test_a_dimensionless_case_has_no_tank_numbers():
     numbers = _audit.tank_numbers(read_case_text('[plate]\nincidence = "18 deg"\n[tow]\nreynolds = 500\n'))

@@ -48,6 +48,13 @@ def test_a_plate_in_water_is_told_what_its_tank_must_be_ready_for():
     assert "licensed practice" in text and "wall time                  about 2 min (25 ns" in text
 
 
+def test_open_water_is_told_how_wide_its_tank_must_be():
+    told_of = " ".join(told(read_case_text(new_case("plate-with-flap"))).split())
+    assert "under 5 % in a tank wider than 6.18 chords = 371 mm (Maskell 1963)" in told_of  # 60 mm sin(18 deg) / 0.05
+    level = read_case_text(DIMENSIONLESS.replace("15 deg", "0 deg"))
+    assert "blockage" not in told(level)
+
+
 def test_a_dimensionless_case_has_no_tank_section():
     text = told(read_case_text(DIMENSIONLESS))
     assert "tank must" not in text and "mN" not in text and "\nCautions\n" in text
