@@ -112,6 +112,8 @@ def _remove_old_run(directory: Path) -> None:
     """Remove an earlier run's own files, and nothing else that may lie there."""
     if not directory.is_dir():
         raise StorageError(f"{directory}: is a file, not a run directory.")
+    if not any((directory / name).exists() for name in (layout.RESOLVED, layout.STATUS, layout.MANIFEST)):
+        raise StorageError(f"{directory}: holds no earlier run, so nothing in it is replaced. Choose another folder.")
     with WriterLock(directory):
         for name in _OURS:
             if name != layout.LOCK:

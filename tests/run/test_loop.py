@@ -125,6 +125,15 @@ def test_an_existing_run_is_not_overwritten_without_being_asked(case, tmp_path):
     assert (tmp_path / "run" / "notes.txt").read_text() == "mine"
 
 
+def test_overwriting_spares_a_folder_that_never_was_a_run(case, tmp_path):
+    mine = tmp_path / "mine"
+    mine.mkdir()
+    (mine / "history.csv").write_text("my own")
+    with pytest.raises(StorageError, match="holds no earlier run"):
+        run_case(case, mine, overwrite=True)
+    assert (mine / "history.csv").read_text() == "my own"
+
+
 def test_divergence_is_told_with_advice_and_keeps_what_was_good(case, tmp_path, monkeypatch):
     import ibsolver.run.loop as loop
 
